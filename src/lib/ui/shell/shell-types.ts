@@ -1,0 +1,5 @@
+export interface NavigationItem {
+  label: string;
+  href: string;
+  current?: boolean;
+}
