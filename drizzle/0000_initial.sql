@@ -25,6 +25,7 @@ CREATE TABLE `session` (
 	`ip_address` text,
 	`user_agent` text,
 	`user_id` text NOT NULL,
+	`fresh_until` integer NOT NULL,
 	FOREIGN KEY (`user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE cascade
 );
 --> statement-breakpoint
@@ -36,10 +37,13 @@ CREATE TABLE `two_factor` (
 	`backup_codes` text NOT NULL,
 	`user_id` text NOT NULL,
 	`verified` integer DEFAULT true,
+	`failed_verification_count` integer DEFAULT 0,
+	`locked_until` integer,
 	FOREIGN KEY (`user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE cascade
 );
 --> statement-breakpoint
 CREATE INDEX `two_factor_user` ON `two_factor` (`user_id`);--> statement-breakpoint
+CREATE INDEX `two_factor_secret` ON `two_factor` (`secret`);--> statement-breakpoint
 CREATE TABLE `user` (
 	`id` text PRIMARY KEY NOT NULL,
 	`name` text NOT NULL,
@@ -65,6 +69,127 @@ CREATE TABLE `verification` (
 );
 --> statement-breakpoint
 CREATE INDEX `verification_identifier` ON `verification` (`identifier`);--> statement-breakpoint
+CREATE TABLE `approval` (
+	`id` text PRIMARY KEY NOT NULL,
+	`kind` text NOT NULL,
+	`subject_type` text NOT NULL,
+	`subject_id` text NOT NULL,
+	`company_id` text NOT NULL,
+	`requested_by` text NOT NULL,
+	`requested_at` integer NOT NULL,
+	`state` text DEFAULT 'asked' NOT NULL,
+	`decided_by` text,
+	`decided_at` integer,
+	`reason` text DEFAULT '' NOT NULL,
+	`payload` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`requested_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`decided_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE INDEX `approval_subject` ON `approval` (`subject_type`,`subject_id`);--> statement-breakpoint
+CREATE INDEX `approval_company` ON `approval` (`company_id`,`state`);--> statement-breakpoint
+CREATE TABLE `bid` (
+	`id` text PRIMARY KEY NOT NULL,
+	`request_id` text NOT NULL,
+	`company_id` text NOT NULL,
+	`number` integer NOT NULL,
+	`state` text DEFAULT 'draft' NOT NULL,
+	`specification_id` text NOT NULL,
+	`currency` text NOT NULL,
+	`body` text NOT NULL,
+	`net_amount` integer NOT NULL,
+	`tax_amount` integer NOT NULL,
+	`freight_amount` integer NOT NULL,
+	`total_amount` integer NOT NULL,
+	`lead_time_working_days` integer NOT NULL,
+	`valid_until` text NOT NULL,
+	`submitted_at` integer,
+	`submitted_by` text,
+	`created_by` text NOT NULL,
+	`created_at` integer NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`request_id`) REFERENCES `request`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`specification_id`) REFERENCES `specification`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`submitted_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`created_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `bid_command_id_unique` ON `bid` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `bid_request_company` ON `bid` (`request_id`,`company_id`);--> statement-breakpoint
+CREATE INDEX `bid_company` ON `bid` (`company_id`,`state`);--> statement-breakpoint
+CREATE INDEX `bid_validity` ON `bid` (`state`,`valid_until`);--> statement-breakpoint
+CREATE TABLE `bid_exception` (
+	`id` text PRIMARY KEY NOT NULL,
+	`bid_id` text NOT NULL,
+	`subject` text NOT NULL,
+	`text` text NOT NULL,
+	`position` integer NOT NULL,
+	`state` text DEFAULT 'open' NOT NULL,
+	`decided_by` text,
+	`decided_at` integer,
+	`reason` text DEFAULT '' NOT NULL,
+	`refusal_confirmed` integer DEFAULT false NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`bid_id`) REFERENCES `bid`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`decided_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE INDEX `bid_exception_bid` ON `bid_exception` (`bid_id`);--> statement-breakpoint
+CREATE TABLE `bid_file` (
+	`id` text PRIMARY KEY NOT NULL,
+	`bid_id` text NOT NULL,
+	`file_id` text NOT NULL,
+	FOREIGN KEY (`bid_id`) REFERENCES `bid`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`file_id`) REFERENCES `file`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `bid_file_once` ON `bid_file` (`bid_id`,`file_id`);--> statement-breakpoint
+CREATE TABLE `requirement_check` (
+	`id` text PRIMARY KEY NOT NULL,
+	`company_id` text,
+	`request_id` text,
+	`request_version` integer,
+	`requirement_hash` text NOT NULL,
+	`requirement` text NOT NULL,
+	`method_version` text NOT NULL,
+	`setting` text NOT NULL,
+	`state` text NOT NULL,
+	`blockers` integer DEFAULT 0 NOT NULL,
+	`cautions` integer DEFAULT 0 NOT NULL,
+	`notes` integer DEFAULT 0 NOT NULL,
+	`created_at` integer NOT NULL,
+	`created_by` text,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`created_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE INDEX `check_request` ON `requirement_check` (`request_id`,`request_version`);--> statement-breakpoint
+CREATE INDEX `check_key` ON `requirement_check` (`requirement_hash`,`setting`,`method_version`);--> statement-breakpoint
+CREATE TABLE `check_acknowledgement` (
+	`id` text PRIMARY KEY NOT NULL,
+	`check_id` text NOT NULL,
+	`code` text NOT NULL,
+	`subject` text NOT NULL,
+	`kind` text NOT NULL,
+	`name` text NOT NULL,
+	`reason` text DEFAULT '' NOT NULL,
+	`user_id` text NOT NULL,
+	`at` integer NOT NULL,
+	FOREIGN KEY (`check_id`) REFERENCES `requirement_check`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `check_acknowledgement_finding` ON `check_acknowledgement` (`check_id`,`code`,`subject`);--> statement-breakpoint
+CREATE TABLE `check_result` (
+	`check_id` text PRIMARY KEY NOT NULL,
+	`body` text NOT NULL,
+	FOREIGN KEY (`check_id`) REFERENCES `requirement_check`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
 CREATE TABLE `company` (
 	`id` text PRIMARY KEY NOT NULL,
 	`kind` text NOT NULL,
@@ -136,6 +261,88 @@ CREATE TABLE `membership` (
 --> statement-breakpoint
 CREATE UNIQUE INDEX `membership_company_user` ON `membership` (`company_id`,`user_id`);--> statement-breakpoint
 CREATE INDEX `membership_user` ON `membership` (`user_id`);--> statement-breakpoint
+CREATE TABLE `company_document` (
+	`id` text PRIMARY KEY NOT NULL,
+	`company_id` text NOT NULL,
+	`file_id` text NOT NULL,
+	`kind` text NOT NULL,
+	`title` text NOT NULL,
+	`added_by` text NOT NULL,
+	`added_at` integer NOT NULL,
+	`archived_at` integer,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`file_id`) REFERENCES `file`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`added_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `company_document_file_id_unique` ON `company_document` (`file_id`);--> statement-breakpoint
+CREATE INDEX `company_document_company` ON `company_document` (`company_id`,`archived_at`);--> statement-breakpoint
+CREATE TABLE `file` (
+	`id` text PRIMARY KEY NOT NULL,
+	`owner_company_id` text NOT NULL,
+	`uploaded_by` text NOT NULL,
+	`purpose` text NOT NULL,
+	`name` text NOT NULL,
+	`content_type` text NOT NULL,
+	`size` integer NOT NULL,
+	`sha256` text,
+	`storage_key` text NOT NULL,
+	`incoming_key` text NOT NULL,
+	`multipart_id` text,
+	`state` text DEFAULT 'pending' NOT NULL,
+	`refused_reason` text,
+	`open_to_verified` integer DEFAULT false NOT NULL,
+	`created_at` integer NOT NULL,
+	`verified_at` integer,
+	`expires_at` integer NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`owner_company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`uploaded_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `file_storage_key_unique` ON `file` (`storage_key`);--> statement-breakpoint
+CREATE UNIQUE INDEX `file_incoming_key_unique` ON `file` (`incoming_key`);--> statement-breakpoint
+CREATE INDEX `file_owner` ON `file` (`owner_company_id`,`purpose`);--> statement-breakpoint
+CREATE INDEX `file_unfinished` ON `file` (`expires_at`) WHERE "file"."state" = 'pending';--> statement-breakpoint
+CREATE TABLE `file_audience` (
+	`file_id` text NOT NULL,
+	`company_id` text NOT NULL,
+	`granted_at` integer NOT NULL,
+	PRIMARY KEY(`file_id`, `company_id`),
+	FOREIGN KEY (`file_id`) REFERENCES `file`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE TABLE `machine` (
+	`id` text PRIMARY KEY NOT NULL,
+	`company_id` text NOT NULL,
+	`name` text NOT NULL,
+	`body` text NOT NULL,
+	`archived_at` integer,
+	`created_at` integer NOT NULL,
+	`updated_at` integer NOT NULL,
+	`created_by` text NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`created_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `machine_command_id_unique` ON `machine` (`command_id`);--> statement-breakpoint
+CREATE INDEX `machine_company` ON `machine` (`company_id`,`archived_at`,`name`);--> statement-breakpoint
+CREATE TABLE `machine_revision` (
+	`id` text PRIMARY KEY NOT NULL,
+	`machine_id` text NOT NULL,
+	`number` integer NOT NULL,
+	`body` text NOT NULL,
+	`saved_at` integer NOT NULL,
+	`saved_by` text NOT NULL,
+	FOREIGN KEY (`machine_id`) REFERENCES `machine`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`saved_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `machine_revision_number` ON `machine_revision` (`machine_id`,`number`);--> statement-breakpoint
 CREATE TABLE `audit_event` (
 	`id` text PRIMARY KEY NOT NULL,
 	`at` integer NOT NULL,
@@ -223,4 +430,137 @@ CREATE TABLE `service_probe` (
 CREATE TABLE `setting` (
 	`key` text PRIMARY KEY NOT NULL,
 	`value` text NOT NULL
+);
+--> statement-breakpoint
+CREATE TABLE `question` (
+	`id` text PRIMARY KEY NOT NULL,
+	`request_id` text NOT NULL,
+	`company_id` text NOT NULL,
+	`kind` text NOT NULL,
+	`text` text NOT NULL,
+	`asked_by` text NOT NULL,
+	`asked_at` integer NOT NULL,
+	`answer` text,
+	`answered_by` text,
+	`answered_at` integer,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`request_id`) REFERENCES `request`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`asked_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`answered_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `question_command_id_unique` ON `question` (`command_id`);--> statement-breakpoint
+CREATE INDEX `question_request` ON `question` (`request_id`,`asked_at`);--> statement-breakpoint
+CREATE TABLE `request` (
+	`id` text PRIMARY KEY NOT NULL,
+	`company_id` text NOT NULL,
+	`number` integer NOT NULL,
+	`title` text NOT NULL,
+	`state` text DEFAULT 'draft' NOT NULL,
+	`form` text NOT NULL,
+	`requirement` text,
+	`commercial` text,
+	`machine_id` text,
+	`machine_version` integer,
+	`current_specification_id` text,
+	`shape` text,
+	`tube_size` real,
+	`material` text,
+	`quantity` integer,
+	`closes_at` integer,
+	`posted_at` integer,
+	`closed_at` integer,
+	`close_reminder_at` integer,
+	`buyer_zone` text,
+	`withdraw_reason` text DEFAULT '' NOT NULL,
+	`created_at` integer NOT NULL,
+	`updated_at` integer NOT NULL,
+	`created_by` text NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`machine_id`) REFERENCES `machine`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`created_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `request_command_id_unique` ON `request` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `request_company_number` ON `request` (`company_id`,`number`);--> statement-breakpoint
+CREATE INDEX `request_company_state` ON `request` (`company_id`,`state`,`updated_at`);--> statement-breakpoint
+CREATE INDEX `request_state_closes` ON `request` (`state`,`closes_at`,`id`);--> statement-breakpoint
+CREATE TABLE `request_file` (
+	`request_id` text NOT NULL,
+	`file_id` text NOT NULL,
+	`kind` text NOT NULL,
+	`added_at` integer NOT NULL,
+	PRIMARY KEY(`request_id`, `file_id`),
+	FOREIGN KEY (`request_id`) REFERENCES `request`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE TABLE `specification` (
+	`id` text PRIMARY KEY NOT NULL,
+	`request_id` text NOT NULL,
+	`number` integer NOT NULL,
+	`body` text NOT NULL,
+	`hash` text NOT NULL,
+	`check_id` text NOT NULL,
+	`created_at` integer NOT NULL,
+	`created_by` text NOT NULL,
+	FOREIGN KEY (`request_id`) REFERENCES `request`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`check_id`) REFERENCES `requirement_check`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`created_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `specification_number` ON `specification` (`request_id`,`number`);--> statement-breakpoint
+CREATE TABLE `audit_seal` (
+	`number` integer PRIMARY KEY NOT NULL,
+	`at` integer NOT NULL,
+	`row_count` integer NOT NULL,
+	`previous` text NOT NULL,
+	`seal` text NOT NULL
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `audit_seal_seal_unique` ON `audit_seal` (`seal`);--> statement-breakpoint
+CREATE TABLE `fabricator_profile` (
+	`company_id` text PRIMARY KEY NOT NULL,
+	`statement` text NOT NULL,
+	`capabilities` text NOT NULL,
+	`works_address` text NOT NULL,
+	`updated_at` integer NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE TABLE `verification_case` (
+	`id` text PRIMARY KEY NOT NULL,
+	`company_id` text NOT NULL,
+	`state` text DEFAULT 'asked' NOT NULL,
+	`statement` text NOT NULL,
+	`capabilities` text NOT NULL,
+	`works_address` text NOT NULL,
+	`asked_by` text NOT NULL,
+	`asked_at` integer NOT NULL,
+	`decided_by` text,
+	`decided_at` integer,
+	`verified_items` text,
+	`verified_until` integer,
+	`reasons` text,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`asked_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`decided_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `verification_case_command_id_unique` ON `verification_case` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `verification_one_open` ON `verification_case` (`company_id`) WHERE "verification_case"."state" = 'asked';--> statement-breakpoint
+CREATE INDEX `verification_queue` ON `verification_case` (`state`,`asked_at`);--> statement-breakpoint
+CREATE INDEX `verification_company` ON `verification_case` (`company_id`,`asked_at`);--> statement-breakpoint
+CREATE TABLE `verification_document` (
+	`case_id` text NOT NULL,
+	`document_id` text NOT NULL,
+	PRIMARY KEY(`case_id`, `document_id`),
+	FOREIGN KEY (`case_id`) REFERENCES `verification_case`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`document_id`) REFERENCES `company_document`(`id`) ON UPDATE no action ON DELETE restrict
 );

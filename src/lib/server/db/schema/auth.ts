@@ -34,6 +34,11 @@ export const session = sqliteTable(
     userId: text('user_id')
       .notNull()
       .references(() => user.id, { onDelete: 'cascade' }),
+    /**
+     * Own field: until then money and security steps need no new password. Moves on with use, lapses
+     * after 30 idle minutes, and is set again only by entering the password.
+     */
+    freshUntil: date('fresh_until').notNull(),
   },
   (table) => [index('session_user').on(table.userId)],
 );
@@ -83,6 +88,11 @@ export const twoFactor = sqliteTable(
       .notNull()
       .references(() => user.id, { onDelete: 'cascade' }),
     verified: flag('verified').default(true),
+    failedVerificationCount: integer('failed_verification_count').default(0),
+    lockedUntil: date('locked_until'),
   },
-  (table) => [index('two_factor_user').on(table.userId)],
+  (table) => [
+    index('two_factor_user').on(table.userId),
+    index('two_factor_secret').on(table.secret),
+  ],
 );
