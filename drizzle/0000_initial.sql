@@ -359,6 +359,7 @@ CREATE TABLE `audit_event` (
 --> statement-breakpoint
 CREATE INDEX `audit_subject` ON `audit_event` (`subject_type`,`subject_id`);--> statement-breakpoint
 CREATE INDEX `audit_company` ON `audit_event` (`company_id`,`at`);--> statement-breakpoint
+CREATE INDEX `audit_unsealed` ON `audit_event` (`id`) WHERE "audit_event"."seal" is null;--> statement-breakpoint
 CREATE TABLE `job` (
 	`id` text PRIMARY KEY NOT NULL,
 	`kind` text NOT NULL,

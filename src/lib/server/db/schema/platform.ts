@@ -1,3 +1,4 @@
+import { sql } from 'drizzle-orm';
 import { index, integer, sqliteTable, text, uniqueIndex } from 'drizzle-orm/sqlite-core';
 import { user } from './auth.ts';
 import { flag, id, instant, json } from './columns.ts';
@@ -27,6 +28,9 @@ export const auditEvent = sqliteTable(
   (table) => [
     index('audit_subject').on(table.subjectType, table.subjectId),
     index('audit_company').on(table.companyId, table.at),
+    index('audit_unsealed')
+      .on(table.id)
+      .where(sql`${table.seal} is null`),
   ],
 );
 
