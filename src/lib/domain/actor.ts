@@ -16,6 +16,8 @@ export interface Actor {
   email: string;
   emailVerified: boolean;
   isAdmin: boolean;
+  /** Whether the person has set up a second factor. */
+  twoFactor?: boolean;
   memberships: ActorMembership[];
   timeZone: string;
   unitSet: 'metric' | 'inch';
