@@ -1,0 +1,555 @@
+import { MU0 } from '../constants/physical.ts';
+import { InductionInputError } from '../input-error.ts';
+import type { Body, Boundary, Panel } from './boundary.ts';
+import { complexMatrix, type ComplexMatrix, type ComplexVector } from './complex-dense.ts';
+import type { LoadGrid } from './load-grid.ts';
+import { gaussLegendre, lagrange } from './quadrature.ts';
+
+/**
+ * Quadratic finite elements for the azimuthal electric field in a part's section.
+ *
+ * Weak form: ∫[(1/μr)(∂zE ∂zw + (∂rE + E/r)(∂rw + w/r)) + jωμ0/ρ·E w] r dr dz = jωμ0 ∮ K w r dl, E = 0 on
+ * the axis. Material per element, so that layers, temperature and saturation need no separate theory.
+ * Source: Galerkin finite elements coupled to the boundary equation after Johnson & Nédélec (1980).
+ */
+export interface LoadElements {
+  grid: LoadGrid;
+  nr: number;
+  nz: number;
+  /** Free nodes (axis nodes are dropped) and half bandwidth of their matrix. */
+  nodes: number;
+  halfBandwidth: number;
+  /** Free-node number at tensor place (ir, iz), −1 on the axis; stride of the tensor is 2·nr + 1. */
+  index: Int32Array;
+  /** One-dimensional element matrices: [element][9]. */
+  radialMass: Float64Array;
+  radialCurl: Float64Array;
+  axialMass: Float64Array;
+  axialStiffness: Float64Array;
+  /** Boundary coupling B (free node × kept boundary column) and evaluation P, sparse by column / row. */
+  coupling: SparseColumns;
+  evaluation: SparseColumns;
+}
+
+/** Sparse matrix as one list of (row, value) per column. */
+export interface SparseColumns {
+  cols: number;
+  rows: Int32Array[];
+  values: Float64Array[];
+}
+
+/** Most free nodes of one part's grid. */
+export const MOST_ELEMENTS_NODES = 30_000;
+
+const gauss3 = gaussLegendre(3);
+const Q2 = Float64Array.of(-1, 0, 1);
+
+/** Values (0–2) and derivatives (3–5, in t) of the quadratic shape functions at t ∈ [−1, 1]. */
+function shape(t: number, out: Float64Array): void {
+  out[0] = 0.5 * t * (t - 1);
+  out[1] = 1 - t * t;
+  out[2] = 0.5 * t * (t + 1);
+  out[3] = t - 0.5;
+  out[4] = -2 * t;
+  out[5] = t + 0.5;
+}
+
+/**
+ * Builds the elements of one part.
+ *
+ * @param column maps a boundary node of this body to its column among the kept ones (mirror images share)
+ * @param columns number of kept columns
+ */
+export function loadElements(
+  b: Boundary,
+  body: Body,
+  grid: LoadGrid,
+  column: Int32Array,
+  columns: number,
+  keptNodes: ArrayLike<number>,
+): LoadElements {
+  const nr = grid.r.length - 1;
+  const nz = grid.z.length - 1;
+  const nnr = 2 * nr + 1;
+  const nnz = 2 * nz + 1;
+  const axis = (grid.r[0] as number) <= 0 ? 1 : 0;
+  const nodes = (nnr - axis) * nnz;
+  if (nodes > MOST_ELEMENTS_NODES) {
+    throw new InductionInputError(
+      'too-many-unknowns',
+      'part',
+      'The part is too large against its skin depth to be resolved. Check dimensions and frequency.',
+    );
+  }
+  const index = new Int32Array(nnr * nnz).fill(-1);
+  // Numbered along the shorter direction first, which keeps the band narrow.
+  const radialFirst = nnr <= nnz;
+  let count = 0;
+  for (let p = 0; p < (radialFirst ? nnz : nnr); p++) {
+    for (let q = 0; q < (radialFirst ? nnr : nnz); q++) {
+      const ir = radialFirst ? q : p;
+      const iz = radialFirst ? p : q;
+      if (ir >= axis) index[iz * nnr + ir] = count++;
+    }
+  }
+  const halfBandwidth = radialFirst ? 2 * (nnr - axis) + 2 : 2 * nnz + 2;
+  const elements: LoadElements = {
+    grid,
+    nr,
+    nz,
+    nodes,
+    halfBandwidth,
+    index,
+    radialMass: new Float64Array(9 * nr),
+    radialCurl: new Float64Array(9 * nr),
+    axialMass: new Float64Array(9 * nz),
+    axialStiffness: new Float64Array(9 * nz),
+    coupling: { cols: columns, rows: [], values: [] },
+    evaluation: { cols: keptNodes.length, rows: [], values: [] },
+  };
+  oneDimensional(elements);
+  elements.coupling = couplingOf(b, body, elements, column, columns);
+  elements.evaluation = evaluationOf(b, elements, keptNodes);
+  return elements;
+}
+
+function oneDimensional(e: LoadElements): void {
+  const s = new Float64Array(6);
+  for (let k = 0; k < e.nr; k++) {
+    const a = e.grid.r[k] as number;
+    const half = 0.5 * ((e.grid.r[k + 1] as number) - a);
+    for (let q = 0; q < 3; q++) {
+      const t = gauss3.x[q] as number;
+      shape(t, s);
+      const r = a + half * (1 + t);
+      const w = (gauss3.w[q] as number) * half * r;
+      for (let i = 0; i < 3; i++) {
+        const ci = (s[3 + i] as number) / half + (s[i] as number) / r;
+        for (let j = 0; j < 3; j++) {
+          const at = 9 * k + 3 * i + j;
+          const cj = (s[3 + j] as number) / half + (s[j] as number) / r;
+          e.radialMass[at] = (e.radialMass[at] as number) + w * (s[i] as number) * (s[j] as number);
+          e.radialCurl[at] = (e.radialCurl[at] as number) + w * ci * cj;
+        }
+      }
+    }
+  }
+  for (let k = 0; k < e.nz; k++) {
+    const half = 0.5 * ((e.grid.z[k + 1] as number) - (e.grid.z[k] as number));
+    for (let q = 0; q < 3; q++) {
+      shape(gauss3.x[q] as number, s);
+      const w = (gauss3.w[q] as number) * half;
+      for (let i = 0; i < 3; i++) {
+        for (let j = 0; j < 3; j++) {
+          const at = 9 * k + 3 * i + j;
+          e.axialMass[at] = (e.axialMass[at] as number) + w * (s[i] as number) * (s[j] as number);
+          e.axialStiffness[at] =
+            (e.axialStiffness[at] as number) +
+            (w * (s[3 + i] as number) * (s[3 + j] as number)) / (half * half);
+        }
+      }
+    }
+  }
+}
+
+/** Element whose interval holds x (edges ascending), clamped. */
+function find(edges: Float64Array, x: number): number {
+  let low = 0;
+  let high = edges.length - 2;
+  while (low < high) {
+    const mid = (low + high + 1) >> 1;
+    if ((edges[mid] as number) <= x) low = mid;
+    else high = mid - 1;
+  }
+  return low;
+}
+
+/**
+ * B = ∮ φ_i L_a r dl: each panel split at the grid lines, 4-point Gauss per piece with the panel's own
+ * basis. (Lumping K at the nodes would falsify the power while the balance still closed.)
+ */
+function couplingOf(
+  b: Boundary,
+  body: Body,
+  e: LoadElements,
+  column: Int32Array,
+  columns: number,
+): SparseColumns {
+  const sums: Map<number, number>[] = Array.from({ length: columns }, () => new Map());
+  const nodes = gaussLegendre(b.order).x;
+  const gauss = gaussLegendre(4);
+  const phi = new Float64Array(b.order);
+  const s = new Float64Array(6);
+  const nnr = 2 * e.nr + 1;
+  for (const panel of body.panels) {
+    const alongZ = panel.hr === 0;
+    const edges = alongZ ? e.grid.z : e.grid.r;
+    const mid = alongZ ? panel.z : panel.r;
+    const half = alongZ ? panel.hz : panel.hr;
+    const fixed = alongZ ? fixedNode(e.grid.r, panel.r, 2) : fixedNode(e.grid.z, panel.z, 2);
+    if (fixed < 0) continue;
+    const stops = pieces(panel, edges, mid, half);
+    for (let k = 0; k + 1 < stops.length; k++) {
+      const t0 = stops[k] as number;
+      const t1 = stops[k + 1] as number;
+      if (t1 - t0 < 1e-12) continue;
+      const middle = mid + half * 0.5 * (t0 + t1);
+      const element = find(edges, middle);
+      const e0 = edges[element] as number;
+      const eh = 0.5 * ((edges[element + 1] as number) - e0);
+      for (let q = 0; q < 4; q++) {
+        const t = t0 + 0.5 * (t1 - t0) * (1 + (gauss.x[q] as number));
+        const x = mid + half * t;
+        const r = alongZ ? panel.r : x;
+        const w = 0.5 * (t1 - t0) * (gauss.w[q] as number) * (panel.length / 2) * r;
+        lagrange(nodes, t, phi);
+        shape((x - e0) / eh - 1, s);
+        for (let a = 0; a < 3; a++) {
+          const along = 2 * element + a;
+          const node = e.index[alongZ ? along * nnr + fixed : fixed * nnr + along] as number;
+          if (node < 0) continue;
+          for (let i = 0; i < b.order; i++) {
+            const into = sums[column[panel.start + i] as number];
+            if (into === undefined) continue;
+            into.set(node, (into.get(node) ?? 0) + w * (s[a] as number) * (phi[i] as number));
+          }
+        }
+      }
+    }
+  }
+  return fromMaps(sums);
+}
+
+/** Tensor node number of a coordinate that lies on an outer edge of the grid; −1 when it does not. */
+function fixedNode(edges: Float64Array, x: number, per: number): number {
+  const last = edges.length - 1;
+  const scale = (edges[last] as number) - (edges[0] as number);
+  if (Math.abs(x - (edges[0] as number)) < 1e-9 * scale) return 0;
+  if (Math.abs(x - (edges[last] as number)) < 1e-9 * scale) return per * last;
+  return -1;
+}
+
+/** Parameters t at which a panel crosses grid lines, within the grid, ascending. */
+function pieces(panel: Panel, edges: Float64Array, mid: number, half: number): number[] {
+  const low = edges[0] as number;
+  const high = edges[edges.length - 1] as number;
+  const clamp = (x: number) => Math.min(1, Math.max(-1, (x - mid) / half));
+  const ends = [clamp(low), clamp(high)].sort((p, q) => p - q);
+  const t0 = ends[0] as number;
+  const t1 = ends[1] as number;
+  if (t1 - t0 < 1e-12) return [];
+  const stops = [t0, t1];
+  for (const edge of edges) {
+    const t = (edge - mid) / half;
+    if (t > t0 + 1e-12 && t < t1 - 1e-12) stops.push(t);
+  }
+  return stops.sort((p, q) => p - q);
+}
+
+function evaluationOf(b: Boundary, e: LoadElements, kept: ArrayLike<number>): SparseColumns {
+  const rows: Int32Array[] = [];
+  const values: Float64Array[] = [];
+  const sr = new Float64Array(6);
+  const sz = new Float64Array(6);
+  const nnr = 2 * e.nr + 1;
+  for (let k = 0; k < kept.length; k++) {
+    const node = kept[k] as number;
+    const r = b.r[node] as number;
+    const z = b.z[node] as number;
+    const ir = find(e.grid.r, r);
+    const iz = find(e.grid.z, z);
+    local(e.grid.r, ir, r, sr);
+    local(e.grid.z, iz, z, sz);
+    const at: number[] = [];
+    const value: number[] = [];
+    for (let a = 0; a < 3; a++) {
+      for (let i = 0; i < 3; i++) {
+        const v = (sz[a] as number) * (sr[i] as number);
+        const free = e.index[(2 * iz + a) * nnr + 2 * ir + i] as number;
+        if (free >= 0 && Math.abs(v) > 1e-14) {
+          at.push(free);
+          value.push(v);
+        }
+      }
+    }
+    rows.push(Int32Array.from(at));
+    values.push(Float64Array.from(value));
+  }
+  return { cols: kept.length, rows, values };
+}
+
+function local(edges: Float64Array, element: number, x: number, out: Float64Array): void {
+  const a = edges[element] as number;
+  const half = 0.5 * ((edges[element + 1] as number) - a);
+  shape(Math.min(1, Math.max(-1, (x - a) / half - 1)), out);
+}
+
+function fromMaps(sums: Map<number, number>[]): SparseColumns {
+  const rows: Int32Array[] = [];
+  const values: Float64Array[] = [];
+  for (const sum of sums) {
+    const sorted = [...sum.entries()].sort((p, q) => p[0] - q[0]);
+    rows.push(Int32Array.from(sorted.map((x) => x[0])));
+    values.push(Float64Array.from(sorted.map((x) => x[1])));
+  }
+  return { cols: sums.length, rows, values };
+}
+
+/** The factored finite-element system of one material state, and A⁻¹(jωμ0·B). */
+export interface LoadSolution {
+  /** E at kept boundary nodes for unit K in each kept column. */
+  z: ComplexMatrix;
+  /** Fields at all free nodes per unit K (nodes × columns), row-major. */
+  fields: ComplexMatrix;
+}
+
+/**
+ * Z = P·A⁻¹·(jωμ0 B) for resistivity and permeability per element (index iz·nr + ir).
+ * Banded complex symmetric L·D·Lᵀ without pivoting: safe, since the real and imaginary parts are positive
+ * (semi)definite (Higham 1998).
+ */
+export function solveLoad(
+  e: LoadElements,
+  frequency: number,
+  resistivity: Float64Array,
+  permeability: Float64Array,
+): LoadSolution {
+  const n = e.nodes;
+  const w = e.halfBandwidth + 1;
+  const re = new Float64Array(n * w);
+  const im = new Float64Array(n * w);
+  stiffness(e, frequency, resistivity, permeability, re, im, w);
+  factorBand(n, w, re, im);
+  const cols = e.coupling.cols;
+  const x = complexMatrix(n, cols);
+  const omegaMu = 2 * Math.PI * frequency * MU0;
+  const start = new Int32Array(cols).fill(n);
+  for (let j = 0; j < cols; j++) {
+    const at = e.coupling.rows[j] as Int32Array;
+    const value = e.coupling.values[j] as Float64Array;
+    for (let k = 0; k < at.length; k++) x.im[(at[k] as number) * cols + j] = omegaMu * (value[k] as number);
+    if (at.length > 0) start[j] = at[0] as number;
+  }
+  solveBand(n, w, re, im, x);
+  const z = complexMatrix(e.evaluation.cols, cols);
+  for (let i = 0; i < e.evaluation.cols; i++) {
+    const at = e.evaluation.rows[i] as Int32Array;
+    const value = e.evaluation.values[i] as Float64Array;
+    for (let k = 0; k < at.length; k++) {
+      const v = value[k] as number;
+      const from = (at[k] as number) * cols;
+      for (let j = 0; j < cols; j++) {
+        z.re[i * cols + j] = (z.re[i * cols + j] as number) + v * (x.re[from + j] as number);
+        z.im[i * cols + j] = (z.im[i * cols + j] as number) + v * (x.im[from + j] as number);
+      }
+    }
+  }
+  return { z, fields: x };
+}
+
+/** Lower band storage: row i holds columns i − (w − 1) … i at [i·w + (j − i + w − 1)]. */
+function stiffness(
+  e: LoadElements,
+  frequency: number,
+  resistivity: Float64Array,
+  permeability: Float64Array,
+  re: Float64Array,
+  im: Float64Array,
+  w: number,
+): void {
+  const omegaMu = 2 * Math.PI * frequency * MU0;
+  const nnr = 2 * e.nr + 1;
+  const free = new Int32Array(9);
+  for (let kz = 0; kz < e.nz; kz++) {
+    for (let kr = 0; kr < e.nr; kr++) {
+      const element = kz * e.nr + kr;
+      const nu = 1 / (permeability[element] as number);
+      const sigma = omegaMu / (resistivity[element] as number);
+      for (let a = 0; a < 3; a++) {
+        for (let i = 0; i < 3; i++) free[3 * a + i] = e.index[(2 * kz + a) * nnr + 2 * kr + i] as number;
+      }
+      for (let p = 0; p < 9; p++) {
+        const row = free[p] as number;
+        if (row < 0) continue;
+        const a = (p / 3) | 0;
+        const i = p - 3 * a;
+        for (let q = 0; q < 9; q++) {
+          const col = free[q] as number;
+          if (col < 0 || col > row) continue;
+          const c = (q / 3) | 0;
+          const j = q - 3 * c;
+          const mz = e.axialMass[9 * kz + 3 * a + c] as number;
+          const sz = e.axialStiffness[9 * kz + 3 * a + c] as number;
+          const mr = e.radialMass[9 * kr + 3 * i + j] as number;
+          const cr = e.radialCurl[9 * kr + 3 * i + j] as number;
+          const at = row * w + (col - row + w - 1);
+          re[at] = (re[at] as number) + nu * (mz * cr + sz * mr);
+          im[at] = (im[at] as number) + sigma * mz * mr;
+        }
+      }
+    }
+  }
+}
+
+/** In place: the band becomes L (unit diagonal) with 1/D kept on the diagonal. */
+function factorBand(n: number, w: number, re: Float64Array, im: Float64Array): void {
+  const hb = w - 1;
+  const vr = new Float64Array(w);
+  const vi = new Float64Array(w);
+  for (let i = 0; i < n; i++) {
+    const first = Math.max(0, i - hb);
+    const ri = i * w + hb - i;
+    // v_j = L_ij·D_j, built column by column.
+    for (let j = first; j < i; j++) {
+      const rj = j * w + hb - j;
+      let sr = re[ri + j] as number;
+      let si = im[ri + j] as number;
+      const from = Math.max(first, j - hb);
+      for (let k = from; k < j; k++) {
+        const ar = vr[k - first] as number;
+        const ai = vi[k - first] as number;
+        const br = re[rj + k] as number;
+        const bi = im[rj + k] as number;
+        sr -= ar * br - ai * bi;
+        si -= ar * bi + ai * br;
+      }
+      vr[j - first] = sr;
+      vi[j - first] = si;
+    }
+    let dr = re[ri + i] as number;
+    let di = im[ri + i] as number;
+    for (let j = first; j < i; j++) {
+      const ar = vr[j - first] as number;
+      const ai = vi[j - first] as number;
+      // 1/D_j stands on the diagonal.
+      const qr = re[j * w + hb] as number;
+      const qi = im[j * w + hb] as number;
+      const lr = ar * qr - ai * qi;
+      const li = ar * qi + ai * qr;
+      re[ri + j] = lr;
+      im[ri + j] = li;
+      dr -= ar * lr - ai * li;
+      di -= ar * li + ai * lr;
+    }
+    const d = dr * dr + di * di;
+    re[ri + i] = dr / d;
+    im[ri + i] = -di / d;
+  }
+}
+
+function solveBand(n: number, w: number, re: Float64Array, im: Float64Array, x: ComplexMatrix): void {
+  const hb = w - 1;
+  const m = x.cols;
+  const xr = x.re;
+  const xi = x.im;
+  for (let i = 0; i < n; i++) {
+    const ri = i * w + hb - i;
+    for (let k = Math.max(0, i - hb); k < i; k++) {
+      axpy(xr, xi, m, i * m, k * m, re[ri + k] as number, im[ri + k] as number);
+    }
+  }
+  for (let i = 0; i < n; i++) {
+    const qr = re[i * w + hb] as number;
+    const qi = im[i * w + hb] as number;
+    for (let j = i * m; j < i * m + m; j++) {
+      const r = xr[j] as number;
+      const q = xi[j] as number;
+      xr[j] = r * qr - q * qi;
+      xi[j] = r * qi + q * qr;
+    }
+  }
+  for (let i = n - 1; i >= 0; i--) {
+    const ri = i * w + hb - i;
+    for (let k = Math.max(0, i - hb); k < i; k++) {
+      axpy(xr, xi, m, k * m, i * m, re[ri + k] as number, im[ri + k] as number);
+    }
+  }
+}
+
+/** x[target] −= f·x[source] over m columns. */
+function axpy(
+  xr: Float64Array,
+  xi: Float64Array,
+  m: number,
+  target: number,
+  source: number,
+  fr: number,
+  fi: number,
+): void {
+  if (fr === 0 && fi === 0) return;
+  for (let j = 0; j < m; j++) {
+    const r = xr[source + j] as number;
+    const q = xi[source + j] as number;
+    xr[target + j] = (xr[target + j] as number) - (fr * r - fi * q);
+    xi[target + j] = (xi[target + j] as number) - (fr * q + fi * r);
+  }
+}
+
+/** Fields at the free nodes for boundary currents K (kept columns). */
+export function nodeFields(solution: LoadSolution, k: ComplexVector): ComplexVector {
+  const n = solution.fields.rows;
+  const m = solution.fields.cols;
+  const re = new Float64Array(n);
+  const im = new Float64Array(n);
+  for (let i = 0; i < n; i++) {
+    let sr = 0;
+    let si = 0;
+    for (let j = 0; j < m; j++) {
+      const fr = solution.fields.re[i * m + j] as number;
+      const fi = solution.fields.im[i * m + j] as number;
+      const kr = k.re[j] as number;
+      const ki = k.im[j] as number;
+      sr += fr * kr - fi * ki;
+      si += fr * ki + fi * kr;
+    }
+    re[i] = sr;
+    im[i] = si;
+  }
+  return { re, im };
+}
+
+/** |H| rms at the middle of each element, A/m, from node fields E. H = curl E/(−jωμ). */
+export function elementFields(
+  e: LoadElements,
+  frequency: number,
+  permeability: Float64Array,
+  field: ComplexVector,
+): Float64Array {
+  const out = new Float64Array(e.nr * e.nz);
+  const nnr = 2 * e.nr + 1;
+  const s = new Float64Array(6);
+  shape(0, s);
+  for (let kz = 0; kz < e.nz; kz++) {
+    const hz = 0.5 * ((e.grid.z[kz + 1] as number) - (e.grid.z[kz] as number));
+    for (let kr = 0; kr < e.nr; kr++) {
+      const r0 = e.grid.r[kr] as number;
+      const hr = 0.5 * ((e.grid.r[kr + 1] as number) - r0);
+      const r = r0 + hr;
+      let cr = 0;
+      let ci = 0;
+      let zr = 0;
+      let zi = 0;
+      for (let a = 0; a < 3; a++) {
+        for (let i = 0; i < 3; i++) {
+          const node = e.index[(2 * kz + a) * nnr + 2 * kr + i] as number;
+          if (node < 0) continue;
+          const er = field.re[node] as number;
+          const ei = field.im[node] as number;
+          const curl = (s[a] as number) * ((s[3 + i] as number) / hr + (s[i] as number) / r);
+          const dz = ((s[3 + a] as number) / hz) * (s[i] as number);
+          cr += curl * er;
+          ci += curl * ei;
+          zr += dz * er;
+          zi += dz * ei;
+        }
+      }
+      const element = kz * e.nr + kr;
+      const scale = 1 / (2 * Math.PI * frequency * MU0 * (permeability[element] as number));
+      out[element] = Math.sqrt(cr * cr + ci * ci + zr * zr + zi * zi) * scale;
+    }
+  }
+  return out;
+}
+
+/** Shape-function nodes in t (for callers that refine a grid). */
+export const QUADRATIC_NODES = Q2;
