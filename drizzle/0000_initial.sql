@@ -261,6 +261,98 @@ CREATE TABLE `membership` (
 --> statement-breakpoint
 CREATE UNIQUE INDEX `membership_company_user` ON `membership` (`company_id`,`user_id`);--> statement-breakpoint
 CREATE INDEX `membership_user` ON `membership` (`user_id`);--> statement-breakpoint
+CREATE TABLE `dispute` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`milestone_id` text NOT NULL,
+	`state` text NOT NULL,
+	`reason` text NOT NULL,
+	`complaint_about` text NOT NULL,
+	`piece_id` text,
+	`amount_claimed` integer NOT NULL,
+	`text` text NOT NULL,
+	`opened_by` text NOT NULL,
+	`opened_by_company_id` text NOT NULL,
+	`opened_at` integer NOT NULL,
+	`answer_due_at` integer NOT NULL,
+	`decision_due_at` integer NOT NULL,
+	`appeal_until` integer,
+	`closed_at` integer,
+	`release_amount` integer,
+	`refund_amount` integer,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`opened_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`opened_by_company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `dispute_command_id_unique` ON `dispute` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `dispute_open_per_milestone` ON `dispute` (`milestone_id`) WHERE state in ('open', 'answered', 'decided', 'appealed');--> statement-breakpoint
+CREATE INDEX `dispute_state` ON `dispute` (`state`,`opened_at`);--> statement-breakpoint
+CREATE INDEX `dispute_order` ON `dispute` (`order_id`);--> statement-breakpoint
+CREATE TABLE `dispute_decision` (
+	`id` text PRIMARY KEY NOT NULL,
+	`dispute_id` text NOT NULL,
+	`instance` integer NOT NULL,
+	`release_amount` integer NOT NULL,
+	`refund_amount` integer NOT NULL,
+	`goods` text NOT NULL,
+	`other_milestones` text NOT NULL,
+	`freight_paid_by` text NOT NULL,
+	`reason` text NOT NULL,
+	`decided_by` text NOT NULL,
+	`at` integer NOT NULL,
+	FOREIGN KEY (`dispute_id`) REFERENCES `dispute`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`decided_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	CONSTRAINT "dispute_decision_parts" CHECK("dispute_decision"."release_amount" >= 0 and "dispute_decision"."refund_amount" >= 0)
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `dispute_decision_instance` ON `dispute_decision` (`dispute_id`,`instance`);--> statement-breakpoint
+CREATE TABLE `dispute_file` (
+	`statement_id` text NOT NULL,
+	`file_id` text NOT NULL,
+	FOREIGN KEY (`statement_id`) REFERENCES `dispute_statement`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `dispute_file_once` ON `dispute_file` (`statement_id`,`file_id`);--> statement-breakpoint
+CREATE TABLE `dispute_statement` (
+	`id` text PRIMARY KEY NOT NULL,
+	`dispute_id` text NOT NULL,
+	`kind` text NOT NULL,
+	`author_user_id` text NOT NULL,
+	`author_company_id` text,
+	`text` text NOT NULL,
+	`at` integer NOT NULL,
+	`command_id` text NOT NULL,
+	FOREIGN KEY (`dispute_id`) REFERENCES `dispute`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`author_user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`author_company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `dispute_statement_command_id_unique` ON `dispute_statement` (`command_id`);--> statement-breakpoint
+CREATE INDEX `dispute_statement_dispute` ON `dispute_statement` (`dispute_id`,`at`);--> statement-breakpoint
+CREATE TABLE `settlement_offer` (
+	`id` text PRIMARY KEY NOT NULL,
+	`dispute_id` text NOT NULL,
+	`company_id` text NOT NULL,
+	`offered_by` text NOT NULL,
+	`offered_at` integer NOT NULL,
+	`release_amount` integer NOT NULL,
+	`refund_amount` integer NOT NULL,
+	`note` text NOT NULL,
+	`state` text NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`dispute_id`) REFERENCES `dispute`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`offered_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	CONSTRAINT "settlement_offer_parts" CHECK("settlement_offer"."release_amount" >= 0 and "settlement_offer"."refund_amount" >= 0)
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `settlement_offer_command_id_unique` ON `settlement_offer` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `settlement_offer_open` ON `settlement_offer` (`dispute_id`,`company_id`) WHERE state = 'open';--> statement-breakpoint
 CREATE TABLE `company_document` (
 	`id` text PRIMARY KEY NOT NULL,
 	`company_id` text NOT NULL,
@@ -287,7 +379,7 @@ CREATE TABLE `file` (
 	`content_type` text NOT NULL,
 	`size` integer NOT NULL,
 	`sha256` text,
-	`storage_key` text NOT NULL,
+	`storage_key` text,
 	`incoming_key` text NOT NULL,
 	`multipart_id` text,
 	`state` text DEFAULT 'pending' NOT NULL,
@@ -343,6 +435,442 @@ CREATE TABLE `machine_revision` (
 );
 --> statement-breakpoint
 CREATE UNIQUE INDEX `machine_revision_number` ON `machine_revision` (`machine_id`,`number`);--> statement-breakpoint
+CREATE TABLE `charge_back` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`milestone_id` text NOT NULL,
+	`charge_id` text NOT NULL,
+	`amount` integer NOT NULL,
+	`currency` text NOT NULL,
+	`state` text NOT NULL,
+	`money_before` text NOT NULL,
+	`opened_at` integer NOT NULL,
+	`closed_at` integer,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE TABLE `ledger_account` (
+	`id` text PRIMARY KEY NOT NULL,
+	`key` text NOT NULL,
+	`kind` text NOT NULL,
+	`currency` text NOT NULL,
+	`order_id` text,
+	`milestone_id` text,
+	`company_id` text,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `ledger_account_key_unique` ON `ledger_account` (`key`);--> statement-breakpoint
+CREATE TABLE `ledger_entry` (
+	`id` text PRIMARY KEY NOT NULL,
+	`tx_id` text NOT NULL,
+	`account_id` text NOT NULL,
+	`milestone_id` text,
+	`debit` integer NOT NULL,
+	`credit` integer NOT NULL,
+	`balance_transaction_id` text,
+	FOREIGN KEY (`tx_id`) REFERENCES `ledger_tx`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`account_id`) REFERENCES `ledger_account`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict,
+	CONSTRAINT "ledger_entry_one_side" CHECK("ledger_entry"."debit" >= 0 and "ledger_entry"."credit" >= 0 and ("ledger_entry"."debit" = 0) <> ("ledger_entry"."credit" = 0))
+);
+--> statement-breakpoint
+CREATE INDEX `ledger_entry_tx` ON `ledger_entry` (`tx_id`);--> statement-breakpoint
+CREATE INDEX `ledger_entry_account` ON `ledger_entry` (`account_id`);--> statement-breakpoint
+CREATE INDEX `ledger_entry_milestone` ON `ledger_entry` (`milestone_id`);--> statement-breakpoint
+CREATE INDEX `ledger_entry_balance_transaction` ON `ledger_entry` (`balance_transaction_id`);--> statement-breakpoint
+CREATE TABLE `ledger_tx` (
+	`id` text PRIMARY KEY NOT NULL,
+	`op_key` text NOT NULL,
+	`kind` text NOT NULL,
+	`order_id` text NOT NULL,
+	`milestone_id` text,
+	`currency` text NOT NULL,
+	`reason` text NOT NULL,
+	`object_id` text,
+	`at` integer NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `ledger_tx_op_key_unique` ON `ledger_tx` (`op_key`);--> statement-breakpoint
+CREATE INDEX `ledger_tx_order` ON `ledger_tx` (`order_id`,`at`);--> statement-breakpoint
+CREATE TABLE `money_alarm` (
+	`id` text PRIMARY KEY NOT NULL,
+	`key` text NOT NULL,
+	`kind` text NOT NULL,
+	`order_id` text,
+	`milestone_id` text,
+	`object_id` text,
+	`detail` text NOT NULL,
+	`at` integer NOT NULL,
+	`resolved_at` integer,
+	`resolved_by` text,
+	`resolution` text DEFAULT '' NOT NULL,
+	FOREIGN KEY (`resolved_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `money_alarm_key_unique` ON `money_alarm` (`key`);--> statement-breakpoint
+CREATE INDEX `money_alarm_open` ON `money_alarm` (`resolved_at`,`at`);--> statement-breakpoint
+CREATE TABLE `payment_event` (
+	`id` text PRIMARY KEY NOT NULL,
+	`endpoint` text NOT NULL,
+	`type` text NOT NULL,
+	`object_id` text NOT NULL,
+	`created` integer NOT NULL,
+	`received_at` integer NOT NULL,
+	`source` text NOT NULL,
+	`state` text NOT NULL,
+	`note` text DEFAULT '' NOT NULL,
+	`processed_at` integer
+);
+--> statement-breakpoint
+CREATE INDEX `payment_event_state` ON `payment_event` (`state`,`received_at`);--> statement-breakpoint
+CREATE TABLE `payment_operation` (
+	`id` text PRIMARY KEY NOT NULL,
+	`key` text NOT NULL,
+	`purpose` text NOT NULL,
+	`generation` integer DEFAULT 1 NOT NULL,
+	`kind` text NOT NULL,
+	`order_id` text,
+	`milestone_id` text,
+	`company_id` text,
+	`request` text NOT NULL,
+	`request_hash` text NOT NULL,
+	`state` text NOT NULL,
+	`attempts` integer DEFAULT 0 NOT NULL,
+	`object_id` text,
+	`error_code` text,
+	`last_error` text,
+	`planned_at` integer NOT NULL,
+	`sent_at` integer,
+	`known_at` integer,
+	`next_try_at` integer NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_operation_key_unique` ON `payment_operation` (`key`);--> statement-breakpoint
+CREATE INDEX `payment_operation_due` ON `payment_operation` (`state`,`next_try_at`);--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_operation_generation` ON `payment_operation` (`purpose`,`generation`);--> statement-breakpoint
+CREATE INDEX `payment_operation_milestone` ON `payment_operation` (`milestone_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_operation_live` ON `payment_operation` (`purpose`) WHERE state in ('planned', 'sent', 'unknown');--> statement-breakpoint
+CREATE TABLE `payment_session` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`milestone_id` text NOT NULL,
+	`attempt` integer NOT NULL,
+	`operation_id` text,
+	`session_id` text,
+	`url` text,
+	`amount` integer NOT NULL,
+	`currency` text NOT NULL,
+	`state` text NOT NULL,
+	`payment_intent_id` text,
+	`charge_id` text,
+	`opened_by` text,
+	`opened_at` integer NOT NULL,
+	`expires_at` integer,
+	`paid_at` integer,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`operation_id`) REFERENCES `payment_operation`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`opened_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_session_session_id_unique` ON `payment_session` (`session_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_session_open` ON `payment_session` (`milestone_id`) WHERE state in ('opening', 'open');--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_session_paid` ON `payment_session` (`milestone_id`) WHERE state = 'paid';--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_session_attempt` ON `payment_session` (`milestone_id`,`attempt`);--> statement-breakpoint
+CREATE INDEX `payment_session_intent` ON `payment_session` (`payment_intent_id`);--> statement-breakpoint
+CREATE INDEX `payment_session_charge` ON `payment_session` (`charge_id`);--> statement-breakpoint
+CREATE TABLE `payout_account` (
+	`id` text PRIMARY KEY NOT NULL,
+	`company_id` text NOT NULL,
+	`account_id` text,
+	`state` text NOT NULL,
+	`requirements` text NOT NULL,
+	`country` text NOT NULL,
+	`created_by` text,
+	`created_at` integer NOT NULL,
+	`checked_at` integer,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`created_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `payout_account_company_id_unique` ON `payout_account` (`company_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `payout_account_account_id_unique` ON `payout_account` (`account_id`);--> statement-breakpoint
+CREATE TABLE `reconciliation_run` (
+	`id` text PRIMARY KEY NOT NULL,
+	`at` integer NOT NULL,
+	`balanced` integer NOT NULL,
+	`compared` integer NOT NULL,
+	`differences` text NOT NULL
+);
+--> statement-breakpoint
+CREATE TABLE `as_built_file` (
+	`record_id` text NOT NULL,
+	`file_id` text NOT NULL,
+	`kind` text NOT NULL,
+	FOREIGN KEY (`record_id`) REFERENCES `as_built_record`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `as_built_file_once` ON `as_built_file` (`record_id`,`file_id`);--> statement-breakpoint
+CREATE TABLE `as_built_record` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`piece_id` text NOT NULL,
+	`attempt` integer NOT NULL,
+	`body` text NOT NULL,
+	`verdicts` text NOT NULL,
+	`verdict` text NOT NULL,
+	`state` text NOT NULL,
+	`specification_hash` text NOT NULL,
+	`entered_by` text NOT NULL,
+	`entered_at` integer NOT NULL,
+	`judged_by` text,
+	`judged_at` integer,
+	`reasons` text DEFAULT '' NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`piece_id`) REFERENCES `piece`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`entered_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`judged_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `as_built_record_command_id_unique` ON `as_built_record` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `as_built_record_attempt` ON `as_built_record` (`piece_id`,`attempt`);--> statement-breakpoint
+CREATE INDEX `as_built_record_order` ON `as_built_record` (`order_id`);--> statement-breakpoint
+CREATE TABLE `coil_order` (
+	`id` text PRIMARY KEY NOT NULL,
+	`number` integer NOT NULL,
+	`request_id` text NOT NULL,
+	`bid_id` text NOT NULL,
+	`specification_id` text NOT NULL,
+	`buyer_company_id` text NOT NULL,
+	`fabricator_company_id` text NOT NULL,
+	`title` text NOT NULL,
+	`quantity` integer NOT NULL,
+	`state` text NOT NULL,
+	`currency` text NOT NULL,
+	`net_amount` integer NOT NULL,
+	`tax_amount` integer NOT NULL,
+	`freight_amount` integer NOT NULL,
+	`total_amount` integer NOT NULL,
+	`fee_basis_points` integer NOT NULL,
+	`inspection_days` integer NOT NULL,
+	`buyer_zone` text NOT NULL,
+	`lead_time_working_days` integer NOT NULL,
+	`due_date` text,
+	`need_by` text,
+	`terms` text NOT NULL,
+	`awarded_at` integer NOT NULL,
+	`awarded_by` text,
+	`acknowledged_at` integer,
+	`acknowledged_by` text,
+	`clock_stopped_at` integer,
+	`closed_at` integer,
+	`end_reason` text DEFAULT '' NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`buyer_company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`fabricator_company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`awarded_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`acknowledged_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `coil_order_bid_id_unique` ON `coil_order` (`bid_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `coil_order_live_per_request` ON `coil_order` (`request_id`) WHERE state in ('to-acknowledge', 'running', 'suspended');--> statement-breakpoint
+CREATE UNIQUE INDEX `coil_order_number` ON `coil_order` (`buyer_company_id`,`number`);--> statement-breakpoint
+CREATE INDEX `coil_order_buyer` ON `coil_order` (`buyer_company_id`,`state`,`awarded_at`);--> statement-breakpoint
+CREATE INDEX `coil_order_fabricator` ON `coil_order` (`fabricator_company_id`,`state`,`awarded_at`);--> statement-breakpoint
+CREATE TABLE `deadline_notice` (
+	`key` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`at` integer NOT NULL
+);
+--> statement-breakpoint
+CREATE TABLE `drawing_revision` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`letter` text NOT NULL,
+	`file_id` text NOT NULL,
+	`note` text DEFAULT '' NOT NULL,
+	`state` text NOT NULL,
+	`sha256` text NOT NULL,
+	`submitted_by` text NOT NULL,
+	`submitted_at` integer NOT NULL,
+	`judged_by` text,
+	`judged_at` integer,
+	`reasons` text DEFAULT '' NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`submitted_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`judged_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `drawing_revision_command_id_unique` ON `drawing_revision` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `drawing_revision_letter` ON `drawing_revision` (`order_id`,`letter`);--> statement-breakpoint
+CREATE TABLE `end_proposal` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`company_id` text NOT NULL,
+	`proposed_by` text NOT NULL,
+	`proposed_at` integer NOT NULL,
+	`parts` text NOT NULL,
+	`work_in_hand` text NOT NULL,
+	`reason` text NOT NULL,
+	`state` text NOT NULL,
+	`decided_by` text,
+	`decided_at` integer,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`proposed_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`decided_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `end_proposal_command_id_unique` ON `end_proposal` (`command_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `end_proposal_open` ON `end_proposal` (`order_id`) WHERE state = 'open';--> statement-breakpoint
+CREATE TABLE `milestone` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`position` integer NOT NULL,
+	`kind` text NOT NULL,
+	`amount` integer NOT NULL,
+	`fee_base` integer NOT NULL,
+	`work` text NOT NULL,
+	`money` text NOT NULL,
+	`attention` text,
+	`due_date` text,
+	`funding_asked_at` integer,
+	`held_at` integer,
+	`opened_at` integer,
+	`submitted_at` integer,
+	`accepted_at` integer,
+	`window_ends_at` integer,
+	`returned_count` integer DEFAULT 0 NOT NULL,
+	`release_amount` integer DEFAULT 0 NOT NULL,
+	`refund_amount` integer DEFAULT 0 NOT NULL,
+	`closed_at` integer,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	CONSTRAINT "milestone_amounts" CHECK("milestone"."amount" > 0 and "milestone"."fee_base" >= 0 and "milestone"."fee_base" <= "milestone"."amount"),
+	CONSTRAINT "milestone_parts" CHECK("milestone"."release_amount" >= 0 and "milestone"."refund_amount" >= 0 and "milestone"."release_amount" + "milestone"."refund_amount" <= "milestone"."amount")
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `milestone_position` ON `milestone` (`order_id`,`position`);--> statement-breakpoint
+CREATE INDEX `milestone_window` ON `milestone` (`money`,`window_ends_at`);--> statement-breakpoint
+CREATE TABLE `milestone_return` (
+	`id` text PRIMARY KEY NOT NULL,
+	`milestone_id` text NOT NULL,
+	`number` integer NOT NULL,
+	`reasons` text NOT NULL,
+	`returned_by` text NOT NULL,
+	`at` integer NOT NULL,
+	FOREIGN KEY (`milestone_id`) REFERENCES `milestone`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`returned_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `milestone_return_number` ON `milestone_return` (`milestone_id`,`number`);--> statement-breakpoint
+CREATE TABLE `order_event` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`milestone_id` text,
+	`kind` text NOT NULL,
+	`text` text NOT NULL,
+	`user_id` text,
+	`company_id` text,
+	`at` integer NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE INDEX `order_event_order` ON `order_event` (`order_id`,`at`);--> statement-breakpoint
+CREATE TABLE `order_message` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`author_user_id` text NOT NULL,
+	`author_company_id` text NOT NULL,
+	`text` text NOT NULL,
+	`at` integer NOT NULL,
+	`command_id` text,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`author_user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`author_company_id`) REFERENCES `company`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `order_message_command_id_unique` ON `order_message` (`command_id`);--> statement-breakpoint
+CREATE INDEX `order_message_order` ON `order_message` (`order_id`,`at`);--> statement-breakpoint
+CREATE TABLE `order_message_file` (
+	`message_id` text NOT NULL,
+	`file_id` text NOT NULL,
+	FOREIGN KEY (`message_id`) REFERENCES `order_message`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `order_message_file_once` ON `order_message_file` (`message_id`,`file_id`);--> statement-breakpoint
+CREATE TABLE `order_specification` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`number` integer NOT NULL,
+	`body` text NOT NULL,
+	`hash` text NOT NULL,
+	`reason` text NOT NULL,
+	`created_at` integer NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `order_specification_number` ON `order_specification` (`order_id`,`number`);--> statement-breakpoint
+CREATE TABLE `piece` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`kind` text NOT NULL,
+	`position` integer NOT NULL,
+	`serial` text NOT NULL,
+	`state` text NOT NULL,
+	`replaces_piece_id` text,
+	`created_at` integer NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `piece_serial` ON `piece` (`order_id`,`serial`);--> statement-breakpoint
+CREATE INDEX `piece_by_serial` ON `piece` (`serial`);--> statement-breakpoint
+CREATE TABLE `shipment` (
+	`id` text PRIMARY KEY NOT NULL,
+	`order_id` text NOT NULL,
+	`carrier` text NOT NULL,
+	`tracking_number` text NOT NULL,
+	`shipped_on` text NOT NULL,
+	`note` text DEFAULT '' NOT NULL,
+	`paper_file_id` text,
+	`shipped_by` text NOT NULL,
+	`created_at` integer NOT NULL,
+	`delivered_on` text,
+	`delivery_proof_at` integer,
+	`proof_file_id` text,
+	`received_at` integer,
+	`received_by` text,
+	`received_note` text DEFAULT '' NOT NULL,
+	`command_id` text NOT NULL,
+	`version` integer DEFAULT 1 NOT NULL,
+	FOREIGN KEY (`order_id`) REFERENCES `coil_order`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`shipped_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict,
+	FOREIGN KEY (`received_by`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE UNIQUE INDEX `shipment_command_id_unique` ON `shipment` (`command_id`);--> statement-breakpoint
+CREATE INDEX `shipment_order` ON `shipment` (`order_id`);--> statement-breakpoint
 CREATE TABLE `audit_event` (
 	`id` text PRIMARY KEY NOT NULL,
 	`at` integer NOT NULL,
