@@ -1,0 +1,11 @@
+export { saveBid, type SaveBidInput } from './save-bid.ts';
+export { submitBid } from './submit-bid.ts';
+export { confirmBid, moveBid, reviseBid, withdrawBid } from './change-bid.ts';
+export { decideException, type DecideExceptionInput } from './decide-exception.ts';
+export { compareBids, type ComparedBid, type Comparison } from './compare-bids.ts';
+export { myBids, ownBid, type OwnBid } from './own-bid.ts';
+export { lapseBids } from './lapse-bids.ts';
+export { awardObstacles, needsApproval } from './award-rules.ts';
+export { companyTerms } from './company-terms.ts';
+export { bidById, exceptionsOf, filesOf, handedInBids, requestById } from './queries.ts';
+export { mailAwarded, mailNotSelected } from './mails.ts';
