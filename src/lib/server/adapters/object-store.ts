@@ -3,6 +3,7 @@ import { Readable } from 'node:stream';
 import {
   AbortMultipartUploadCommand,
   CompleteMultipartUploadCommand,
+  CopyObjectCommand,
   CreateMultipartUploadCommand,
   DeleteObjectCommand,
   GetObjectCommand,
@@ -275,6 +276,17 @@ export function createObjectStore(config: ObjectStoreConfig) {
     return getSignedUrl(signer, command, { expiresIn });
   }
 
+  /** A copy inside the store, of what is at `from` when the store gets to it. */
+  async function copy(given: { from: string; to: string; contentType: string }): Promise<void> {
+    const command = new CopyObjectCommand({
+      ...at(given.to),
+      CopySource: `${config.bucket}/${keySchema.parse(given.from)}`,
+      MetadataDirective: 'REPLACE',
+      ContentType: given.contentType,
+    });
+    await call(() => server.send(command));
+  }
+
   /** Deleting what is not there is no error. */
   async function remove(key: string): Promise<void> {
     await call(() => server.send(new DeleteObjectCommand(at(key))));
@@ -290,6 +302,7 @@ export function createObjectStore(config: ObjectStoreConfig) {
     head,
     getStream,
     inspect,
+    copy,
     presignGet,
     remove,
     close: () => {

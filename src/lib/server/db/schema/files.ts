@@ -22,8 +22,8 @@ export const file = sqliteTable(
     size: integer('size').notNull(),
     /** Hex; computed by the server from what the store holds. */
     sha256: text('sha256'),
-    /** Where the verified bytes are. No slot is ever signed for this key. */
-    storageKey: text('storage_key').notNull().unique(),
+    /** Where the verified bytes are, once clean. No slot is ever signed for this key, so they stay as verified. */
+    storageKey: text('storage_key').unique(),
     /** Where the browser puts them; emptied after verification. */
     incomingKey: text('incoming_key').notNull().unique(),
     /** Upload id of the store while a file comes in parts. */

@@ -1,0 +1,23 @@
+import { AppError } from '../../domain/errors.ts';
+import { createObjectStore, ObjectStoreError, type ObjectStore } from '../adapters/object-store.ts';
+import { config } from '../config/index.ts';
+
+export type { ObjectStore };
+
+let shared: ObjectStore | undefined;
+
+/** The store of this process, made from the configuration at first use. */
+export function objectStore(): ObjectStore {
+  shared ??= createObjectStore(config().storage);
+  return shared;
+}
+
+/** Runs calls to the store; when it does not answer as it should, that is told as such. */
+export async function storing<T>(work: () => Promise<T>): Promise<T> {
+  try {
+    return await work();
+  } catch (cause) {
+    if (cause instanceof ObjectStoreError) throw new AppError('storage-service', { cause });
+    throw cause;
+  }
+}
