@@ -77,7 +77,9 @@ export function acceptanceFields(values: Values, index: number): FieldSpec[] {
   }
   if (kind === 'hydrostatic') fields.push(quantity(at('holdTime'), 'Hold for', 'time', { empty: 'none' }));
   if (kind === 'flow') {
-    fields.push(quantity(at('differentialPressure'), 'At a pressure difference of', 'pressure', { empty: 'none' }));
+    fields.push(
+      quantity(at('differentialPressure'), 'At a pressure difference of', 'pressure', { empty: 'none' }),
+    );
   }
   fields.push(text(at('note'), 'Note', 1000, { rows: 2 }));
   return fields;

@@ -1,5 +1,14 @@
 /** The fields of the coil, by the paths of the API's coil. */
-import { choice, count, flag, quantity, special, text, type FieldGroupSpec, type Values } from './field-spec.ts';
+import {
+  choice,
+  count,
+  flag,
+  quantity,
+  special,
+  text,
+  type FieldGroupSpec,
+  type Values,
+} from './field-spec.ts';
 
 const none = { empty: 'none' } as const;
 const shapeOf = (v: Values) => v['coil.winding.shape'] ?? '';
@@ -51,7 +60,9 @@ export const windingGroup: FieldGroupSpec = {
     quantity('coil.winding.insideDiameter', 'Inside diameter of the first turn', 'length', {
       when: isShape('conical', 'pancake'),
     }),
-    quantity('coil.winding.endInsideDiameter', 'Inside diameter of the last turn', 'length', { when: isShape('conical') }),
+    quantity('coil.winding.endInsideDiameter', 'Inside diameter of the last turn', 'length', {
+      when: isShape('conical'),
+    }),
     special('lengths', 'coil.winding.insideDiameters', 'Inside diameter of each turn', {
       empty: 'required',
       when: isShape('stepped'),
@@ -73,20 +84,49 @@ export const windingGroup: FieldGroupSpec = {
     quantity('coil.winding.insideWidth', 'Clear opening across', 'length', {
       when: isShape('racetrack', 'rectangular-helix', 'channel'),
     }),
-    quantity('coil.winding.cornerRadius', 'Inside corner radius', 'length', { when: isShape('racetrack', 'rectangular-helix') }),
-    quantity('coil.winding.crossingHeight', 'Height of the raised crossing', 'length', { when: isShape('channel') }),
+    quantity('coil.winding.cornerRadius', 'Inside corner radius', 'length', {
+      when: isShape('racetrack', 'rectangular-helix'),
+    }),
+    quantity('coil.winding.crossingHeight', 'Height of the raised crossing', 'length', {
+      when: isShape('channel'),
+    }),
     quantity('coil.winding.length', 'Length of the legs', 'length', { when: isShape('hairpin') }),
-    quantity('coil.winding.legGap', 'Clear distance between the legs', 'length', { when: isShape('hairpin') }),
+    quantity('coil.winding.legGap', 'Clear distance between the legs', 'length', {
+      when: isShape('hairpin'),
+    }),
     quantity('coil.winding.turns', 'Turns', 'number', {
       empty: 'proposed',
-      when: isShape('helix', 'conical', 'pancake', 'bore', 'racetrack', 'rectangular-helix', 'hairpin', 'channel'),
+      when: isShape(
+        'helix',
+        'conical',
+        'pancake',
+        'bore',
+        'racetrack',
+        'rectangular-helix',
+        'hairpin',
+        'channel',
+      ),
       hint: 'Empty = the checker proposes.',
     }),
     quantity('coil.winding.pitch', 'Pitch', 'length', {
-      when: isShape('helix', 'conical', 'stepped', 'pancake', 'bore', 'racetrack', 'rectangular-helix', 'hairpin', 'channel'),
+      when: isShape(
+        'helix',
+        'conical',
+        'stepped',
+        'pancake',
+        'bore',
+        'racetrack',
+        'rectangular-helix',
+        'hairpin',
+        'channel',
+      ),
     }),
     quantity('coil.winding.faceGap', 'Gap to the part’s face', 'length', { when: isShape('pancake') }),
-    text('coil.winding.note', 'What the drawing shows', 1000, { empty: 'required', rows: 3, when: isShape('drawing') }),
+    text('coil.winding.note', 'What the drawing shows', 1000, {
+      empty: 'required',
+      rows: 3,
+      when: isShape('drawing'),
+    }),
     quantity('coil.diameterTolerance', 'Tolerance of the opening, ±', 'length', none),
     quantity('coil.pitchTolerance', 'Tolerance of the pitch, ±', 'length', none),
   ],
@@ -137,7 +177,10 @@ export const leadsGroup: FieldGroupSpec = {
       empty: 'not-known',
       hint: 'From the last turn to the contact face.',
     }),
-    quantity('coil.leads.spacing', 'Lead spacing', 'length', { empty: 'not-known', hint: 'From centre to centre.' }),
+    quantity('coil.leads.spacing', 'Lead spacing', 'length', {
+      empty: 'not-known',
+      hint: 'From centre to centre.',
+    }),
     choice(
       'coil.handing.windingDirection',
       'Winding direction',
@@ -157,7 +200,10 @@ export const leadsGroup: FieldGroupSpec = {
       ],
       none,
     ),
-    quantity('coil.handing.leadAngleDeg', 'Angle between the leads', 'angle', { ...none, hint: 'Seen along the axis.' }),
+    quantity('coil.handing.leadAngleDeg', 'Angle between the leads', 'angle', {
+      ...none,
+      hint: 'Seen along the axis.',
+    }),
     choice(
       'coil.handing.upEnd',
       'Which end is up',
@@ -189,7 +235,10 @@ export const supportGroup: FieldGroupSpec = {
       ],
       { initial: 'none' },
     ),
-    count('coil.support.count', 'How many', { empty: 'required', when: (v) => ['studs', 'boards'].includes(v['coil.support.kind'] ?? '') }),
+    count('coil.support.count', 'How many', {
+      empty: 'required',
+      when: (v) => ['studs', 'boards'].includes(v['coil.support.kind'] ?? ''),
+    }),
     choice(
       'coil.insulation.kind',
       'Insulation or coating',

@@ -27,7 +27,12 @@ export const commercialGroups: readonly FieldGroupSpec[] = [
         { initial: 'DAP' },
       ),
       text('commercial.deliveryPlace', 'Named place', 200, { empty: 'required' }),
-      choice('commercial.currency', 'Currency of the bids', currencies.map((c) => [c, c] as const), { initial: 'EUR' }),
+      choice(
+        'commercial.currency',
+        'Currency of the bids',
+        currencies.map((c) => [c, c] as const),
+        { initial: 'EUR' },
+      ),
       text('commercial.poNumber', 'Own purchase order number', 60),
       text('commercial.costCentre', 'Cost centre', 60),
       special('money', 'commercial.budget', 'Budget', { hint: 'Never shown to bidders.' }),
@@ -37,8 +42,14 @@ export const commercialGroups: readonly FieldGroupSpec[] = [
     title: 'Milestones',
     lead: 'Money is paid in stages and held until the evidence is there. These are the limits for the bidders’ plans.',
     fields: [
-      special('percent', 'commercial.milestoneLimits.drawingMaxBp', 'Drawing: at most', { empty: 'required', initial: '20 %' }),
-      special('percent', 'commercial.milestoneLimits.deliveryMinBp', 'Delivery: at least', { empty: 'required', initial: '20 %' }),
+      special('percent', 'commercial.milestoneLimits.drawingMaxBp', 'Drawing: at most', {
+        empty: 'required',
+        initial: '20 %',
+      }),
+      special('percent', 'commercial.milestoneLimits.deliveryMinBp', 'Delivery: at least', {
+        empty: 'required',
+        initial: '20 %',
+      }),
       count('commercial.inspectionDays', 'Days for inspection', {
         initial: '10',
         hint: 'Calendar days after receipt in which you accept, return or dispute.',

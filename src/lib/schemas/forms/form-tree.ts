@@ -67,7 +67,11 @@ export function readGroups(
 }
 
 /** The texts of the groups' fields for a tree of values; empty ones are left out. */
-export function textsOf(groups: readonly FieldGroupSpec[], tree: Tree, unitSet: UnitSet): Record<string, string> {
+export function textsOf(
+  groups: readonly FieldGroupSpec[],
+  tree: Tree,
+  unitSet: UnitSet,
+): Record<string, string> {
   const texts: Record<string, string> = {};
   for (const field of groups.flatMap((group) => group.fields)) {
     const text = fieldText(field, getAt(tree, field.path), unitSet);

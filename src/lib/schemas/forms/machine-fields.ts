@@ -54,36 +54,83 @@ export const supplyGroup: FieldGroupSpec = {
     quantity('machine.supply.frequencyMin', 'Lowest frequency', 'frequency', notKnown),
     quantity('machine.supply.frequencyMax', 'Highest frequency', 'frequency', notKnown),
     quantity('machine.supply.ratedPower', 'Rated power', 'power', notKnown),
-    quantity('machine.supply.voltageLimit', 'Voltage limit', 'voltage', { ...notKnown, hint: 'V rms at the inverter output.' }),
-    quantity('machine.supply.currentLimit', 'Current limit', 'current', { ...notKnown, hint: 'A rms at the inverter output.' }),
+    quantity('machine.supply.voltageLimit', 'Voltage limit', 'voltage', {
+      ...notKnown,
+      hint: 'V rms at the inverter output.',
+    }),
+    quantity('machine.supply.currentLimit', 'Current limit', 'current', {
+      ...notKnown,
+      hint: 'A rms at the inverter output.',
+    }),
     quantity('machine.supply.dcVoltage', 'DC supply voltage', 'voltage', { ...notKnown, when: isPushPull }),
-    quantity('machine.supply.devicePeakVoltage', 'Peak voltage rating of one device', 'voltage', { ...notKnown, when: isPushPull }),
-    quantity('machine.supply.chokeInductance', 'Choke inductance', 'inductance', { ...notKnown, when: isChokeFed }),
-    quantity('machine.supply.chokeSaturationCurrent', 'Choke saturation current', 'current', { ...notKnown, when: isChokeFed }),
+    quantity('machine.supply.devicePeakVoltage', 'Peak voltage rating of one device', 'voltage', {
+      ...notKnown,
+      when: isPushPull,
+    }),
+    quantity('machine.supply.chokeInductance', 'Choke inductance', 'inductance', {
+      ...notKnown,
+      when: isChokeFed,
+    }),
+    quantity('machine.supply.chokeSaturationCurrent', 'Choke saturation current', 'current', {
+      ...notKnown,
+      when: isChokeFed,
+    }),
   ],
 };
 
 export const transformerGroup: FieldGroupSpec = {
   title: 'Output transformer',
   fields: [
-    choice('machine.hasTransformer', 'Output transformer', [['no', 'None'], ['yes', 'There is one']], { initial: 'no' }),
+    choice(
+      'machine.hasTransformer',
+      'Output transformer',
+      [
+        ['no', 'None'],
+        ['yes', 'There is one'],
+      ],
+      { initial: 'no' },
+    ),
     special('numbers', 'machine.transformer.ratios', 'Ratio taps', {
       empty: 'required',
       when: hasTransformer,
       hint: 'Primary turns per secondary turn, one after the other: 6; 8; 10; 12.',
     }),
-    plain('machine.transformer.fitted', 'Ratio connected now', '', 1, { when: hasTransformer, hint: 'One of the taps.' }),
+    plain('machine.transformer.fitted', 'Ratio connected now', '', 1, {
+      when: hasTransformer,
+      hint: 'One of the taps.',
+    }),
     choice(
       'machine.transformer.bankSide',
       'The capacitor bank is on the',
-      [['primary', 'primary side (inverter)'], ['secondary', 'secondary side (coil)']],
+      [
+        ['primary', 'primary side (inverter)'],
+        ['secondary', 'secondary side (coil)'],
+      ],
       { when: hasTransformer, initial: 'primary' },
     ),
-    quantity('machine.transformer.leakageInductance', 'Leakage inductance', 'inductance', { ...notKnown, when: hasTransformer, hint: 'Referred to the primary.' }),
-    quantity('machine.transformer.magnetisingInductance', 'Magnetising inductance', 'inductance', { ...notKnown, when: hasTransformer, hint: 'Seen from the primary.' }),
-    quantity('machine.transformer.windingResistance', 'Winding resistance', 'resistance', { ...notKnown, when: hasTransformer, hint: 'Referred to the primary.' }),
-    plain('machine.transformer.voltsPerHertzLimit', 'Volts per hertz limit', 'V/Hz', 1, { ...notKnown, when: hasTransformer }),
-    quantity('machine.transformer.apparentPowerLimit', 'Apparent power limit', 'apparent-power', { ...notKnown, when: hasTransformer }),
+    quantity('machine.transformer.leakageInductance', 'Leakage inductance', 'inductance', {
+      ...notKnown,
+      when: hasTransformer,
+      hint: 'Referred to the primary.',
+    }),
+    quantity('machine.transformer.magnetisingInductance', 'Magnetising inductance', 'inductance', {
+      ...notKnown,
+      when: hasTransformer,
+      hint: 'Seen from the primary.',
+    }),
+    quantity('machine.transformer.windingResistance', 'Winding resistance', 'resistance', {
+      ...notKnown,
+      when: hasTransformer,
+      hint: 'Referred to the primary.',
+    }),
+    plain('machine.transformer.voltsPerHertzLimit', 'Volts per hertz limit', 'V/Hz', 1, {
+      ...notKnown,
+      when: hasTransformer,
+    }),
+    quantity('machine.transformer.apparentPowerLimit', 'Apparent power limit', 'apparent-power', {
+      ...notKnown,
+      when: hasTransformer,
+    }),
   ],
 };
 
@@ -94,10 +141,29 @@ export const fixedGroup: FieldGroupSpec = {
     quantity('machine.fixed.inductance', 'Fixed inductance', 'inductance', notKnown),
     quantity('machine.fixed.inductanceBand', 'Its band, ±', 'fraction', notKnown),
     quantity('machine.fixed.resistance', 'Fixed resistance', 'resistance', notKnown),
-    quantity('machine.fixed.strayCapacitance', 'Capacitance across the tank, outside the bank', 'capacitance', notKnown),
-    choice('machine.isCalibrated', 'Was the machine calibrated?', [['no', 'No'], ['yes', 'Yes']], { initial: 'no' }),
-    special('date', 'machine.fixed.calibration.date', 'Date of calibration', { empty: 'required', when: isCalibrated }),
-    text('machine.fixed.calibration.method', 'How it was calibrated', 200, { empty: 'required', when: isCalibrated }),
+    quantity(
+      'machine.fixed.strayCapacitance',
+      'Capacitance across the tank, outside the bank',
+      'capacitance',
+      notKnown,
+    ),
+    choice(
+      'machine.isCalibrated',
+      'Was the machine calibrated?',
+      [
+        ['no', 'No'],
+        ['yes', 'Yes'],
+      ],
+      { initial: 'no' },
+    ),
+    special('date', 'machine.fixed.calibration.date', 'Date of calibration', {
+      empty: 'required',
+      when: isCalibrated,
+    }),
+    text('machine.fixed.calibration.method', 'How it was calibrated', 200, {
+      empty: 'required',
+      when: isCalibrated,
+    }),
   ],
 };
 
@@ -119,11 +185,18 @@ export function bankGroupFields(index: number): FieldSpec[] {
     quantity(at('tolerance'), 'Tolerance, ±', 'fraction', { when, initial: '5 %' }),
     count(at('count'), 'Units owned', { when }),
     count(at('positions'), 'Places on the machine', { when }),
-    count(at('unitsInSeries'), 'Units in series per string', { when, initial: '1', hint: '1 = all in parallel.' }),
+    count(at('unitsInSeries'), 'Units in series per string', {
+      when,
+      initial: '1',
+      hint: '1 = all in parallel.',
+    }),
     count(at('fitted'), 'Units fitted now', { when }),
     quantity(at('unitVoltageLimit'), 'Voltage limit of a unit', 'voltage', { ...notKnown, when }),
     quantity(at('unitCurrentLimit'), 'Current limit of a unit', 'current', { ...notKnown, when }),
-    quantity(at('unitReactivePowerLimit'), 'Reactive power limit of a unit', 'reactive-power', { ...notKnown, when }),
+    quantity(at('unitReactivePowerLimit'), 'Reactive power limit of a unit', 'reactive-power', {
+      ...notKnown,
+      when,
+    }),
     plain(at('lossTangent'), 'Loss tangent', '', 1, { ...notKnown, when }),
   ];
 }
@@ -148,7 +221,10 @@ export const waterGroup: FieldGroupSpec = {
     quantity('machine.water.inletTemperatureC', 'Inlet temperature', 'temperature', notKnown),
     quantity('machine.water.supplyPressure', 'Supply pressure', 'pressure', notKnown),
     quantity('machine.water.returnPressure', 'Return pressure', 'pressure', notKnown),
-    quantity('machine.water.flow', 'Flow to the coil', 'flow', { ...notKnown, hint: 'Where it is known instead of the pressures.' }),
+    quantity('machine.water.flow', 'Flow to the coil', 'flow', {
+      ...notKnown,
+      hint: 'Where it is known instead of the pressures.',
+    }),
     quantity('machine.water.outletLimitC', 'Outlet limit', 'temperature', notKnown),
     quantity('machine.water.interlockFlow', 'Smallest flow of the interlock', 'flow', notKnown),
   ],
@@ -160,12 +236,26 @@ export const connectionGroup: FieldGroupSpec = {
     choice(
       'machine.connection.kind',
       'Kind of connection',
-      [['plate', 'Plate'], ['blade', 'Blade'], ['quick-change', 'Quick-change'], ['custom', 'Custom']],
+      [
+        ['plate', 'Plate'],
+        ['blade', 'Blade'],
+        ['quick-change', 'Quick-change'],
+        ['custom', 'Custom'],
+      ],
       notKnown,
     ),
-    quantity('machine.connection.centreDistance', 'Centre distance', 'length', { ...none, when: hasConnection }),
-    quantity('machine.connection.contactWidth', 'Contact face, width', 'length', { ...none, when: hasConnection }),
-    quantity('machine.connection.contactHeight', 'Contact face, height', 'length', { ...none, when: hasConnection }),
+    quantity('machine.connection.centreDistance', 'Centre distance', 'length', {
+      ...none,
+      when: hasConnection,
+    }),
+    quantity('machine.connection.contactWidth', 'Contact face, width', 'length', {
+      ...none,
+      when: hasConnection,
+    }),
+    quantity('machine.connection.contactHeight', 'Contact face, height', 'length', {
+      ...none,
+      when: hasConnection,
+    }),
     text('machine.connection.waterPorts', 'Water ports', 200, { when: hasConnection }),
     text('machine.connection.note', 'Note', 1000, { when: hasConnection, rows: 3 }),
   ],

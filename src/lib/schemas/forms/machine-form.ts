@@ -46,7 +46,8 @@ export function readMachine(values: Values, unitSet: UnitSet): ReadMachine {
   const tree: Tree = {};
   readGroups(machineGroups(values), values, unitSet, tree, outcome);
   const assembled = assemble(tree, values, outcome);
-  if (Object.keys(outcome.errors).length > 0 || outcome.missing.length > 0) return { ...outcome, machine: null };
+  if (Object.keys(outcome.errors).length > 0 || outcome.missing.length > 0)
+    return { ...outcome, machine: null };
   const parsed = machineSchema.safeParse(assembled);
   if (!parsed.success) {
     return { ...outcome, errors: issuesToFields(parsed.error, 'machine', elsewhere), machine: null };
@@ -69,6 +70,8 @@ export function machineValues(machine: Machine, unitSet: UnitSet): Record<string
       : { 'machine.bank.totals.rows': String(bank.totals.length) }),
   };
   const fitted = transformer ? transformer.ratios[transformer.fittedTap] : null;
-  const tree: Tree = { machine: { ...machine, transformer: transformer ? { ...transformer, fitted } : null } };
+  const tree: Tree = {
+    machine: { ...machine, transformer: transformer ? { ...transformer, fitted } : null },
+  };
   return { ...textsOf(machineGroups(values), tree, unitSet), ...values };
 }

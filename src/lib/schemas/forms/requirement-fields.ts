@@ -20,7 +20,10 @@ export const partGroups: readonly FieldGroupSpec[] = [
   {
     title: 'Workpiece',
     fields: [
-      choice('part.material.id', 'Material', [...libraryMaterials, ['own', 'Another material, with its own values']]),
+      choice('part.material.id', 'Material', [
+        ...libraryMaterials,
+        ['own', 'Another material, with its own values'],
+      ]),
       choice(
         'part.form',
         'Form',
@@ -45,25 +48,59 @@ export const partGroups: readonly FieldGroupSpec[] = [
     lead: 'Means over the process where a value changes with temperature.',
     fields: [
       text('part.material.own.name', 'Name', 120, { empty: 'required', when: ownMaterial }),
-      plain('part.material.own.resistivity20', 'Resistivity at 20 °C', 'µΩ·cm', 1e-8, { ...none, when: ownMaterial, hint: 'Leave both empty where it does not conduct.' }),
-      plain('part.material.own.resistivityHot', 'Resistivity at the target temperature', 'µΩ·cm', 1e-8, { ...none, when: ownMaterial }),
-      plain('part.material.own.relativePermeability', 'Relative permeability', '', 1, { when: ownMaterial, initial: '1', hint: 'Initial; 1 = not magnetic.' }),
-      plain('part.material.own.saturationFluxDensity', 'Saturation flux density', 'T', 1, { ...none, when: ownMaterial }),
-      quantity('part.material.own.curieTemperatureC', 'Curie temperature', 'temperature', { ...none, when: ownMaterial }),
+      plain('part.material.own.resistivity20', 'Resistivity at 20 °C', 'µΩ·cm', 1e-8, {
+        ...none,
+        when: ownMaterial,
+        hint: 'Leave both empty where it does not conduct.',
+      }),
+      plain('part.material.own.resistivityHot', 'Resistivity at the target temperature', 'µΩ·cm', 1e-8, {
+        ...none,
+        when: ownMaterial,
+      }),
+      plain('part.material.own.relativePermeability', 'Relative permeability', '', 1, {
+        when: ownMaterial,
+        initial: '1',
+        hint: 'Initial; 1 = not magnetic.',
+      }),
+      plain('part.material.own.saturationFluxDensity', 'Saturation flux density', 'T', 1, {
+        ...none,
+        when: ownMaterial,
+      }),
+      quantity('part.material.own.curieTemperatureC', 'Curie temperature', 'temperature', {
+        ...none,
+        when: ownMaterial,
+      }),
       plain('part.material.own.density', 'Density', 'kg/m³', 1, { when: ownMaterial }),
       plain('part.material.own.specificHeat', 'Specific heat', 'J/(kg·K)', 1, { when: ownMaterial }),
-      plain('part.material.own.thermalConductivity', 'Thermal conductivity', 'W/(m·K)', 1, { when: ownMaterial }),
+      plain('part.material.own.thermalConductivity', 'Thermal conductivity', 'W/(m·K)', 1, {
+        when: ownMaterial,
+      }),
       plain('part.material.own.emissivity', 'Emissivity', '', 1, { ...none, when: ownMaterial }),
-      quantity('part.material.own.solidusC', 'Melting begins at', 'temperature', { ...none, when: ownMaterial }),
+      quantity('part.material.own.solidusC', 'Melting begins at', 'temperature', {
+        ...none,
+        when: ownMaterial,
+      }),
     ],
   },
   {
     title: 'What gets hot',
     fields: [
-      quantity('part.heatedLength', 'Heated length', 'length', { ...none, hint: 'Empty = the whole length.' }),
-      quantity('part.depthWanted', 'Depth wanted', 'length', { ...none, hint: 'Below the surface; empty = through.' }),
-      quantity('part.axialOffset', 'Offset in the coil', 'length', { initial: '0', hint: 'Middle of the part from the middle of the coil, along the axis.' }),
-      quantity('part.runout', 'Runout', 'length', { ...none, hint: 'Total indicator reading while turning.' }),
+      quantity('part.heatedLength', 'Heated length', 'length', {
+        ...none,
+        hint: 'Empty = the whole length.',
+      }),
+      quantity('part.depthWanted', 'Depth wanted', 'length', {
+        ...none,
+        hint: 'Below the surface; empty = through.',
+      }),
+      quantity('part.axialOffset', 'Offset in the coil', 'length', {
+        initial: '0',
+        hint: 'Middle of the part from the middle of the coil, along the axis.',
+      }),
+      quantity('part.runout', 'Runout', 'length', {
+        ...none,
+        hint: 'Total indicator reading while turning.',
+      }),
       flag('part.rotation', 'The part turns while it is heated'),
     ],
   },
@@ -95,7 +132,10 @@ export const processGroups: readonly FieldGroupSpec[] = [
       ),
       quantity('process.startTemperatureC', 'Start temperature', 'temperature', { initial: '20 °C' }),
       quantity('process.targetTemperatureC', 'Target temperature', 'temperature'),
-      quantity('process.time', 'Heating time', 'time', { ...none, hint: 'Or parts per hour; empty = as fast as the machine can.' }),
+      quantity('process.time', 'Heating time', 'time', {
+        ...none,
+        hint: 'Or parts per hour; empty = as fast as the machine can.',
+      }),
       plain('process.partsPerHour', 'Parts per hour', '1/h', 1, none),
       quantity('process.highestSurfaceTemperatureC', 'Highest surface temperature', 'temperature', none),
       choice(
@@ -143,9 +183,18 @@ export const fixtureGroups: readonly FieldGroupSpec[] = [
       text('fixture.material', 'Material', 200, { when: hasFixture }),
       text('fixture.datum', 'Datum on the part', 500, { when: hasFixture }),
       text('fixture.contact', 'What touches the part', 500, { when: hasFixture }),
-      quantity('fixture.contactTemperatureC', 'How hot the contact gets', 'temperature', { ...none, when: hasFixture }),
-      quantity('fixture.operatorDistance', 'Distance of a person from the coil', 'distance', { ...none, hint: 'From the middle of the coil to where someone stands.' }),
-      special('lines', 'fixture.acceptance', 'Acceptance of the fixture', { when: hasFixture, hint: 'One line each.' }),
+      quantity('fixture.contactTemperatureC', 'How hot the contact gets', 'temperature', {
+        ...none,
+        when: hasFixture,
+      }),
+      quantity('fixture.operatorDistance', 'Distance of a person from the coil', 'distance', {
+        ...none,
+        hint: 'From the middle of the coil to where someone stands.',
+      }),
+      special('lines', 'fixture.acceptance', 'Acceptance of the fixture', {
+        when: hasFixture,
+        hint: 'One line each.',
+      }),
     ],
   },
 ];
@@ -189,4 +238,3 @@ export const responsibilityGroup: FieldGroupSpec = {
     ),
   ],
 };
-

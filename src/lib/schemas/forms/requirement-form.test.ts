@@ -30,9 +30,23 @@ describe('the form of a requirement', () => {
       { shape: 'conical', insideDiameter: 0.04, endInsideDiameter: 0.06, turns: 4, pitch: 0.013 },
       { shape: 'stepped', insideDiameters: [0.048, 0.05, 0.052], pitch: 0.013 },
       { shape: 'bore', outsideDiameter: 0.03, clearance: null, turns: null, pitch: 0.012 },
-      { shape: 'racetrack', insideLength: 0.1, insideWidth: 0.04, cornerRadius: 0.02, turns: 3, pitch: 0.013 },
+      {
+        shape: 'racetrack',
+        insideLength: 0.1,
+        insideWidth: 0.04,
+        cornerRadius: 0.02,
+        turns: 3,
+        pitch: 0.013,
+      },
       { shape: 'hairpin', length: 0.2, legGap: 0.03, turns: 1, pitch: 0.012 },
-      { shape: 'channel', insideLength: 0.2, insideWidth: 0.03, crossingHeight: 0.05, turns: 1, pitch: 0.012 },
+      {
+        shape: 'channel',
+        insideLength: 0.2,
+        insideWidth: 0.03,
+        crossingHeight: 0.05,
+        turns: 1,
+        pitch: 0.012,
+      },
       { shape: 'drawing', note: 'as sketched' },
     ];
     for (const winding of windings) {
@@ -162,8 +176,8 @@ describe('the commercial form', () => {
   });
 
   it('refuses a day that the calendar does not have', () => {
-    expect(readCommercial({ ...filled(), 'commercial.closesOn': '2027-02-30' }, 'metric').errors).toHaveProperty([
-      'commercial.closesOn',
-    ]);
+    expect(
+      readCommercial({ ...filled(), 'commercial.closesOn': '2027-02-30' }, 'metric').errors,
+    ).toHaveProperty(['commercial.closesOn']);
   });
 });

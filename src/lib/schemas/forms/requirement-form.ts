@@ -158,7 +158,10 @@ export interface ReadRequest extends FormOutcome {
 }
 
 /** Reads part, process, machine, coil, fixture and acceptance; null until all of it can be read. */
-export function readRequirement(values: Values, unitSet: UnitSet): FormOutcome & { requirement: Requirement | null } {
+export function readRequirement(
+  values: Values,
+  unitSet: UnitSet,
+): FormOutcome & { requirement: Requirement | null } {
   const outcome: FormOutcome = { errors: {}, missing: [] };
   const tree: Tree = {};
   for (const section of ['part', 'process', 'coil', 'fixture', 'acceptance'] as const) {
@@ -182,7 +185,10 @@ export function readRequirement(values: Values, unitSet: UnitSet): FormOutcome &
   return { ...outcome, requirement: parsed.data };
 }
 
-export function readCommercial(values: Values, unitSet: UnitSet): FormOutcome & { commercial: Commercial | null } {
+export function readCommercial(
+  values: Values,
+  unitSet: UnitSet,
+): FormOutcome & { commercial: Commercial | null } {
   const outcome: FormOutcome = { errors: {}, missing: [] };
   const tree: Tree = {};
   readGroups(commercialGroups, values, unitSet, tree, outcome);
@@ -220,7 +226,10 @@ export function newRequestValues(): Record<string, string> {
 }
 
 /** Acceptance lines as rows of the form. */
-export function acceptanceValues(acceptance: readonly AcceptanceLine[], unitSet: UnitSet): Record<string, string> {
+export function acceptanceValues(
+  acceptance: readonly AcceptanceLine[],
+  unitSet: UnitSet,
+): Record<string, string> {
   const values: Record<string, string> = { 'acceptance.rows': String(acceptance.length) };
   acceptance.forEach((line, index) => {
     values[`acceptance.${index}.id`] = line.id;
