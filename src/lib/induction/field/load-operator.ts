@@ -21,11 +21,12 @@ export interface LoadElements {
   halfBandwidth: number;
   /** Free-node number at tensor place (ir, iz), −1 on the axis; stride of the tensor is 2·nr + 1. */
   index: Int32Array;
-  /** One-dimensional element matrices: [element][9]. */
-  radialMass: Float64Array;
-  radialCurl: Float64Array;
-  axialMass: Float64Array;
-  axialStiffness: Float64Array;
+  /**
+   * At the 3 Gauss points of every element interval, per point 7 numbers: 3 shape values, 3 derivatives
+   * (radial: N′ + N/r, the curl part), and the weight (radial: with r).
+   */
+  radial: Float64Array;
+  axial: Float64Array;
   /** Boundary coupling B (free node × kept boundary column) and evaluation P, sparse by column / row. */
   coupling: SparseColumns;
   evaluation: SparseColumns;
@@ -42,7 +43,6 @@ export interface SparseColumns {
 export const MOST_ELEMENTS_NODES = 30_000;
 
 const gauss3 = gaussLegendre(3);
-const Q2 = Float64Array.of(-1, 0, 1);
 
 /** Values (0–2) and derivatives (3–5, in t) of the quadratic shape functions at t ∈ [−1, 1]. */
 function shape(t: number, out: Float64Array): void {
@@ -100,56 +100,42 @@ export function loadElements(
     nodes,
     halfBandwidth,
     index,
-    radialMass: new Float64Array(9 * nr),
-    radialCurl: new Float64Array(9 * nr),
-    axialMass: new Float64Array(9 * nz),
-    axialStiffness: new Float64Array(9 * nz),
+    radial: pointTable(grid.r, true),
+    axial: pointTable(grid.z, false),
     coupling: { cols: columns, rows: [], values: [] },
     evaluation: { cols: keptNodes.length, rows: [], values: [] },
   };
-  oneDimensional(elements);
   elements.coupling = couplingOf(b, body, elements, column, columns);
   elements.evaluation = evaluationOf(b, elements, keptNodes);
   return elements;
 }
 
-function oneDimensional(e: LoadElements): void {
+/** Numbers per Gauss point in `radial` and `axial`. */
+const PER_POINT = 7;
+
+/** Gauss points per element: 3 in z by 3 in r, z slowest. Permeability is kept at each of them. */
+export const POINTS_PER_ELEMENT = 9;
+
+function pointTable(edges: Float64Array, radial: boolean): Float64Array {
+  const count = edges.length - 1;
+  const out = new Float64Array(count * 3 * PER_POINT);
   const s = new Float64Array(6);
-  for (let k = 0; k < e.nr; k++) {
-    const a = e.grid.r[k] as number;
-    const half = 0.5 * ((e.grid.r[k + 1] as number) - a);
+  for (let k = 0; k < count; k++) {
+    const a = edges[k] as number;
+    const half = 0.5 * ((edges[k + 1] as number) - a);
     for (let q = 0; q < 3; q++) {
       const t = gauss3.x[q] as number;
       shape(t, s);
-      const r = a + half * (1 + t);
-      const w = (gauss3.w[q] as number) * half * r;
+      const x = a + half * (1 + t);
+      const at = (3 * k + q) * PER_POINT;
       for (let i = 0; i < 3; i++) {
-        const ci = (s[3 + i] as number) / half + (s[i] as number) / r;
-        for (let j = 0; j < 3; j++) {
-          const at = 9 * k + 3 * i + j;
-          const cj = (s[3 + j] as number) / half + (s[j] as number) / r;
-          e.radialMass[at] = (e.radialMass[at] as number) + w * (s[i] as number) * (s[j] as number);
-          e.radialCurl[at] = (e.radialCurl[at] as number) + w * ci * cj;
-        }
+        out[at + i] = s[i] as number;
+        out[at + 3 + i] = (s[3 + i] as number) / half + (radial ? (s[i] as number) / x : 0);
       }
+      out[at + 6] = (gauss3.w[q] as number) * half * (radial ? x : 1);
     }
   }
-  for (let k = 0; k < e.nz; k++) {
-    const half = 0.5 * ((e.grid.z[k + 1] as number) - (e.grid.z[k] as number));
-    for (let q = 0; q < 3; q++) {
-      shape(gauss3.x[q] as number, s);
-      const w = (gauss3.w[q] as number) * half;
-      for (let i = 0; i < 3; i++) {
-        for (let j = 0; j < 3; j++) {
-          const at = 9 * k + 3 * i + j;
-          e.axialMass[at] = (e.axialMass[at] as number) + w * (s[i] as number) * (s[j] as number);
-          e.axialStiffness[at] =
-            (e.axialStiffness[at] as number) +
-            (w * (s[3 + i] as number) * (s[3 + j] as number)) / (half * half);
-        }
-      }
-    }
-  }
+  return out;
 }
 
 /** Element whose interval holds x (edges ascending), clamped. */
@@ -304,7 +290,7 @@ export interface LoadSolution {
 }
 
 /**
- * Z = P·A⁻¹·(jωμ0 B) for resistivity and permeability per element (index iz·nr + ir).
+ * Z = P·A⁻¹·(jωμ0 B) for resistivity per element (index iz·nr + ir) and permeability at its 9 Gauss points.
  * Banded complex symmetric L·D·Lᵀ without pivoting: safe, since the real and imaginary parts are positive
  * (semi)definite (Higham 1998).
  */
@@ -360,31 +346,54 @@ function stiffness(
   const omegaMu = 2 * Math.PI * frequency * MU0;
   const nnr = 2 * e.nr + 1;
   const free = new Int32Array(9);
+  const kr9 = new Float64Array(81);
+  const km9 = new Float64Array(81);
+  const value = new Float64Array(9);
+  const curl = new Float64Array(9);
+  const slope = new Float64Array(9);
   for (let kz = 0; kz < e.nz; kz++) {
     for (let kr = 0; kr < e.nr; kr++) {
       const element = kz * e.nr + kr;
-      const nu = 1 / (permeability[element] as number);
       const sigma = omegaMu / (resistivity[element] as number);
+      kr9.fill(0);
+      km9.fill(0);
+      for (let g = 0; g < POINTS_PER_ELEMENT; g++) {
+        const at = (3 * kz + ((g / 3) | 0)) * PER_POINT;
+        const ar = (3 * kr + (g % 3)) * PER_POINT;
+        const weight = (e.axial[at + 6] as number) * (e.radial[ar + 6] as number);
+        const nu = weight / (permeability[POINTS_PER_ELEMENT * element + g] as number);
+        for (let p = 0; p < 9; p++) {
+          const a = (p / 3) | 0;
+          const i = p - 3 * a;
+          const na = e.axial[at + a] as number;
+          const ni = e.radial[ar + i] as number;
+          value[p] = na * ni;
+          curl[p] = na * (e.radial[ar + 3 + i] as number);
+          slope[p] = (e.axial[at + 3 + a] as number) * ni;
+        }
+        for (let p = 0; p < 9; p++) {
+          const cp = nu * (curl[p] as number);
+          const sp = nu * (slope[p] as number);
+          const vp = weight * sigma * (value[p] as number);
+          for (let q = 0; q <= p; q++) {
+            const k = 9 * p + q;
+            kr9[k] = (kr9[k] as number) + cp * (curl[q] as number) + sp * (slope[q] as number);
+            km9[k] = (km9[k] as number) + vp * (value[q] as number);
+          }
+        }
+      }
       for (let a = 0; a < 3; a++) {
         for (let i = 0; i < 3; i++) free[3 * a + i] = e.index[(2 * kz + a) * nnr + 2 * kr + i] as number;
       }
       for (let p = 0; p < 9; p++) {
-        const row = free[p] as number;
-        if (row < 0) continue;
-        const a = (p / 3) | 0;
-        const i = p - 3 * a;
-        for (let q = 0; q < 9; q++) {
-          const col = free[q] as number;
-          if (col < 0 || col > row) continue;
-          const c = (q / 3) | 0;
-          const j = q - 3 * c;
-          const mz = e.axialMass[9 * kz + 3 * a + c] as number;
-          const sz = e.axialStiffness[9 * kz + 3 * a + c] as number;
-          const mr = e.radialMass[9 * kr + 3 * i + j] as number;
-          const cr = e.radialCurl[9 * kr + 3 * i + j] as number;
-          const at = row * w + (col - row + w - 1);
-          re[at] = (re[at] as number) + nu * (mz * cr + sz * mr);
-          im[at] = (im[at] as number) + sigma * mz * mr;
+        for (let q = 0; q <= p; q++) {
+          const f = free[p] as number;
+          const h = free[q] as number;
+          if (f < 0 || h < 0) continue;
+          const row = Math.max(f, h);
+          const k = row * w + (Math.min(f, h) - row + w - 1);
+          re[k] = (re[k] as number) + (kr9[9 * p + q] as number);
+          im[k] = (im[k] as number) + (km9[9 * p + q] as number);
         }
       }
     }
@@ -508,48 +517,46 @@ export function nodeFields(solution: LoadSolution, k: ComplexVector): ComplexVec
   return { re, im };
 }
 
-/** |H| rms at the middle of each element, A/m, from node fields E. H = curl E/(−jωμ). */
-export function elementFields(
+/**
+ * |H| rms at the Gauss points of each element, A/m, from node fields E; H = curl E/(−jωμ).
+ * Order as the permeability: 9 per element, element iz·nr + ir.
+ */
+export function pointFields(
   e: LoadElements,
   frequency: number,
   permeability: Float64Array,
   field: ComplexVector,
 ): Float64Array {
-  const out = new Float64Array(e.nr * e.nz);
+  const out = new Float64Array(POINTS_PER_ELEMENT * e.nr * e.nz);
   const nnr = 2 * e.nr + 1;
-  const s = new Float64Array(6);
-  shape(0, s);
   for (let kz = 0; kz < e.nz; kz++) {
-    const hz = 0.5 * ((e.grid.z[kz + 1] as number) - (e.grid.z[kz] as number));
     for (let kr = 0; kr < e.nr; kr++) {
-      const r0 = e.grid.r[kr] as number;
-      const hr = 0.5 * ((e.grid.r[kr + 1] as number) - r0);
-      const r = r0 + hr;
-      let cr = 0;
-      let ci = 0;
-      let zr = 0;
-      let zi = 0;
-      for (let a = 0; a < 3; a++) {
-        for (let i = 0; i < 3; i++) {
-          const node = e.index[(2 * kz + a) * nnr + 2 * kr + i] as number;
-          if (node < 0) continue;
-          const er = field.re[node] as number;
-          const ei = field.im[node] as number;
-          const curl = (s[a] as number) * ((s[3 + i] as number) / hr + (s[i] as number) / r);
-          const dz = ((s[3 + a] as number) / hz) * (s[i] as number);
-          cr += curl * er;
-          ci += curl * ei;
-          zr += dz * er;
-          zi += dz * ei;
+      for (let g = 0; g < POINTS_PER_ELEMENT; g++) {
+        const at = (3 * kz + ((g / 3) | 0)) * PER_POINT;
+        const ar = (3 * kr + (g % 3)) * PER_POINT;
+        let cr = 0;
+        let ci = 0;
+        let zr = 0;
+        let zi = 0;
+        for (let a = 0; a < 3; a++) {
+          for (let i = 0; i < 3; i++) {
+            const node = e.index[(2 * kz + a) * nnr + 2 * kr + i] as number;
+            if (node < 0) continue;
+            const er = field.re[node] as number;
+            const ei = field.im[node] as number;
+            const curl = (e.axial[at + a] as number) * (e.radial[ar + 3 + i] as number);
+            const dz = (e.axial[at + 3 + a] as number) * (e.radial[ar + i] as number);
+            cr += curl * er;
+            ci += curl * ei;
+            zr += dz * er;
+            zi += dz * ei;
+          }
         }
+        const k = POINTS_PER_ELEMENT * (kz * e.nr + kr) + g;
+        const scale = 1 / (2 * Math.PI * frequency * MU0 * (permeability[k] as number));
+        out[k] = Math.sqrt(cr * cr + ci * ci + zr * zr + zi * zi) * scale;
       }
-      const element = kz * e.nr + kr;
-      const scale = 1 / (2 * Math.PI * frequency * MU0 * (permeability[element] as number));
-      out[element] = Math.sqrt(cr * cr + ci * ci + zr * zr + zi * zi) * scale;
     }
   }
   return out;
 }
-
-/** Shape-function nodes in t (for callers that refine a grid). */
-export const QUADRATIC_NODES = Q2;

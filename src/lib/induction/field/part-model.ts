@@ -7,9 +7,10 @@ import { prepareUpdates, solveField } from './coil-block.ts';
 import type { FieldGeometry, KeptLoad } from './field-geometry.ts';
 import { loadGrid } from './load-grid.ts';
 import {
-  elementFields,
   loadElements,
   nodeFields,
+  pointFields,
+  POINTS_PER_ELEMENT,
   solveLoad,
   type LoadElements,
   type LoadSolution,
@@ -156,7 +157,7 @@ export interface PartsSolution {
   /** A rms. */
   current: number;
   loads: LoadSolution[];
-  /** Relative permeability per element of each part. */
+  /** Relative permeability of each part: 9 Gauss points per element. */
   permeability: Float64Array[];
   resistivity: Float64Array[];
   iterations: number;
@@ -186,11 +187,11 @@ export function solveParts(
   const permeability = parts.map((p, q) => {
     const law = p.material.magnetisation;
     const before = start?.[q];
-    return p.temperature.map((t, k) => {
+    return Float64Array.from({ length: POINTS_PER_ELEMENT * p.temperature.length }, (_, k) => {
+      const t = p.temperature[(k / POINTS_PER_ELEMENT) | 0] as number;
       if (law === null || t >= law.curieC) return 1;
-      return before?.[k] !== undefined && before[k] > 1
-        ? (before[k] as number)
-        : describingPermeability(law, t, peak);
+      const known = before?.[k] ?? 0;
+      return known > 1 ? known : describingPermeability(law, t, peak);
     });
   });
   const nonlinear = parts.some((p) => isSaturating(p));
@@ -273,9 +274,9 @@ function update(
     re: field.k.re.subarray(from, from + p.load.count),
     im: field.k.im.subarray(from, from + p.load.count),
   };
-  const h = elementFields(p.elements, frequency, mu, nodeFields(load, k));
+  const h = pointFields(p.elements, frequency, mu, nodeFields(load, k));
   for (let i = 0; i < mu.length; i++) {
-    const t = p.temperature[i] as number;
+    const t = p.temperature[(i / POINTS_PER_ELEMENT) | 0] as number;
     if (t >= law.curieC) continue;
     const next = describingPermeability(law, t, Math.SQRT2 * (h[i] as number) * current);
     const old = mu[i] as number;

@@ -460,9 +460,10 @@ function build(d: Description): Material {
   };
 }
 
-const library: readonly Material[] = descriptions.map(build);
+/** The materials of the library, in reading order. */
+export const materials: readonly Material[] = descriptions.map(build);
 
-/** The materials of the library, in reading order; every property carries its source and standing. */
+/** The materials of the library; every property carries its source and standing. */
 export function libraryMaterials(): readonly Material[] {
-  return library;
+  return materials;
 }
