@@ -10,6 +10,7 @@ import { rm } from 'node:fs/promises';
 import type { AddressInfo } from 'node:net';
 import path from 'node:path';
 import S3rver from 's3rver';
+import { checkCompletedParts } from './parts.ts';
 import { checkSignature, S3Refusal, type Credentials, type SignedRequest } from './signature.ts';
 
 /** Bodies whose hash is signed are held in memory until it is checked; larger ones come presigned. */
@@ -237,6 +238,7 @@ export async function startObjectStore(options: ObjectStoreOptions): Promise<Run
       assertLength(signed);
       await checkSignature(signed, options.credentials);
       const body = await heldBody(request, signed);
+      await checkCompletedParts(signed, body, options.dataDir);
       if (await abortUpload(signed, options.dataDir, response)) return;
       forward(request, response, signed, body, backPort, cors);
     } catch (error) {
