@@ -1,0 +1,2 @@
+/** Money: ledger, operations at the payment service, payouts, statements, reconciliation. */
+export { payoutReady } from './payout-ready.ts';

@@ -1,0 +1,43 @@
+/** Orders: what follows from an award, up to everything but the money itself. */
+export { createOrder, milestoneMoney, type CreateOrderInput } from './create-order.ts';
+export { acknowledgeOrder, moveOrder } from './acknowledge-order.ts';
+export { approvedDrawing, drawingsOf, judgeDrawing, submitDrawing } from './drawings.ts';
+export { enterRecord, movePiece, recordsOf, type EnterRecordInput } from './records.ts';
+export { askRemake, concedeMiss } from './misses.ts';
+export {
+  acceptSubmission,
+  acceptWork,
+  returnSubmission,
+  submitMilestone,
+  tellSubmitted,
+} from './submissions.ts';
+export {
+  confirmReceipt,
+  enterDeliveryProof,
+  markReceived,
+  shipmentsOf,
+  shipOrder,
+  type ShipInput,
+} from './delivery.ts';
+export { moveMoney, moveWork, openWhatCanStart, setAttention, windowEnd } from './milestones.ts';
+export {
+  companyOf,
+  milestoneFor,
+  milestonesOf,
+  openDisputesOf,
+  orderFor,
+  orderNumberText,
+  orderSpecificationOf,
+  parties,
+  piecesOf,
+  sideOf,
+  unsafeMilestone,
+  unsafeOrder,
+  type MilestoneRow,
+  type OrderRow,
+  type PieceRow,
+  type Side,
+} from './queries.ts';
+export { requireNoDispute, requireRunning } from './guards.ts';
+export { acceptanceLines } from './specification.ts';
+export { tell, type OrderNews } from './tell.ts';
