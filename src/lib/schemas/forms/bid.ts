@@ -185,3 +185,37 @@ export function parseBidForm(
     },
   };
 }
+
+const plain = (amountInMinor: number) => (amountInMinor / 100).toFixed(2);
+const percentText = (basisPoints: number) => String(basisPoints / 100);
+
+/** The form's texts for a saved bid, the counterpart of `parseBidForm`. */
+export function bidFormValues(bid: {
+  body: BidBody;
+  leadTimeWorkingDays: number;
+  validUntil: string;
+  exceptions: readonly { subject: string; text: string }[];
+}): Record<string, string> {
+  const values: Record<string, string> = {
+    leadTime: bid.leadTimeWorkingDays > 0 ? String(bid.leadTimeWorkingDays) : '',
+    validUntil: bid.validUntil,
+    toolingOwner: bid.body.toolingOwner,
+    warrantyMonths: String(bid.body.warrantyMonths),
+    note: bid.body.note,
+  };
+  for (const line of bid.body.lines) {
+    values[`price.${line.kind}`] = plain(line.amount);
+    values[`label.${line.kind}`] = line.label === priceKindText[line.kind] ? '' : line.label;
+  }
+  bid.body.taxLines.forEach((line, n) => {
+    values[`tax.${n}.kind`] = line.kind;
+    values[`tax.${n}.rate`] = percentText(line.rateBp);
+    values[`tax.${n}.amount`] = plain(line.amount);
+  });
+  for (const share of bid.body.milestonePlan) values[`share.${share.kind}`] = percentText(share.shareBp);
+  bid.exceptions.forEach((row, n) => {
+    values[`exception.${n}.subject`] = row.subject;
+    values[`exception.${n}.text`] = row.text;
+  });
+  return values;
+}
