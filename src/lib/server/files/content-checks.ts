@@ -73,8 +73,9 @@ function isStl({ head, tail, size, isText }: FileEnds): boolean {
 }
 
 /** CSV (RFC 4180 in spirit): UTF-8 text, no markup, the same number of separators in its first lines. */
-function isCsv({ head, size, isText, isUtf8 }: FileEnds): boolean {
-  if (!isText || !isUtf8) return false;
+function isCsv(ends: FileEnds): boolean {
+  const { head, size, isText, isUtf8 } = ends;
+  if (!isText || !isUtf8 || isDxf(ends) || isStep(ends) || isStl(ends)) return false;
   const text = new TextDecoder().decode(head);
   if (looksLikeMarkup(text)) return false;
   // Quoted cells may hold separators and line breaks; they are cut out before counting.
