@@ -9,6 +9,7 @@ const node = (name: string, include: string[], extra: Record<string, unknown> = 
     environment: 'node' as const,
     include,
     setupFiles: ['tests/support/no-stray-console.ts'],
+    env: { COILYARD_MODE: 'test', LOG_LEVEL: 'silent' },
     ...extra,
   },
 });

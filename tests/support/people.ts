@@ -1,10 +1,10 @@
-import { and, eq } from 'drizzle-orm';
 import type { Actor } from '../../src/lib/domain/actor.ts';
 import { dayMs } from '../../src/lib/domain/dates.ts';
 import type { Currency } from '../../src/lib/domain/money.ts';
 import type { CompanyKind, Role } from '../../src/lib/domain/roles.ts';
 import { businessNow } from '../../src/lib/server/adapters/clock.ts';
 import { newId } from '../../src/lib/server/adapters/ids.ts';
+import { loadActor } from '../../src/lib/server/auth/actor.ts';
 import type { Database } from '../../src/lib/server/db/index.ts';
 import { user } from '../../src/lib/server/db/schema/auth.ts';
 import { company, membership } from '../../src/lib/server/db/schema/companies.ts';
@@ -47,34 +47,8 @@ async function insertUser(db: Database, options: PersonOptions & { isAdmin?: boo
   return row;
 }
 
-/** The actor as the hook would build it, read afresh from the tables. */
-export async function actorFor(db: Database, userId: string): Promise<Actor> {
-  const [person] = await db.select().from(user).where(eq(user.id, userId));
-  if (!person) throw new Error(`no user ${userId}`);
-  const now = await businessNow(db);
-  const rows = await db
-    .select({ roles: membership.roles, company })
-    .from(membership)
-    .innerJoin(company, eq(company.id, membership.companyId))
-    .where(and(eq(membership.userId, userId), eq(membership.active, true)));
-  return {
-    userId,
-    name: person.name,
-    email: person.email,
-    emailVerified: person.emailVerified,
-    isAdmin: person.isAdmin,
-    memberships: rows.map((row) => ({
-      companyId: row.company.id,
-      companyName: row.company.name,
-      kind: row.company.kind,
-      verified: row.company.kind === 'buyer' || (row.company.verifiedUntil ?? 0) > now,
-      roles: row.roles,
-    })),
-    timeZone: person.timeZone,
-    unitSet: person.unitSet,
-    requestId: null,
-  };
-}
+/** The actor as the hook builds it, read afresh from the tables. */
+export const actorFor = (db: Database, userId: string): Promise<Actor> => loadActor(db, userId);
 
 /** A company without members; returns its id. Fabricators are unverified unless told. */
 export async function aCompany(

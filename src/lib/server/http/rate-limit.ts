@@ -1,4 +1,4 @@
-import { sql } from 'drizzle-orm';
+import { eq, sql } from 'drizzle-orm';
 import { AppError } from '../../domain/errors.ts';
 import { realNow } from '../adapters/clock.ts';
 import type { Database } from '../db/index.ts';
@@ -31,4 +31,9 @@ export async function countAgainstLimit(
       detail: `That was too often in a short time. Please try again in ${seconds} s.`,
     });
   }
+}
+
+/** Takes a key's count back, after a success. */
+export async function forgetCount(db: Database, key: string): Promise<void> {
+  await db.delete(rateLimit).where(eq(rateLimit.key, key));
 }
