@@ -85,20 +85,15 @@ function arcPanel(r: number, z: number, radius: number, from: number, to: number
 
 /** Split of each flat of a rectangular tube: graded towards the corners, where the current crowds. */
 const FLAT_BREAKS = [0, 0.175, 0.5, 0.825, 1];
-const FLAT_BREAKS_PREVIEW = [0, 0.25, 0.75, 1];
 
 /**
  * Panels of a (rounded) rectangular section about (r, z), in order: top flat inwards… the sequence runs
  * counter-clockwise from the outer flat: outer (+r), top (+z), inner (−r), bottom (−z), an arc after
  * each flat when the corners are round.
  */
-export function rectanglePanels(
-  centre: Ring,
-  section: Section & { kind: 'rectangular' },
-  coarse: boolean,
-): Panel[] {
+export function rectanglePanels(centre: Ring, section: Section & { kind: 'rectangular' }): Panel[] {
   const { halfAxial: hz, halfRadial: hr, outerCorner: c } = section;
-  const breaks = coarse ? FLAT_BREAKS_PREVIEW : FLAT_BREAKS;
+  const breaks = FLAT_BREAKS;
   const panels: Panel[] = [];
   for (let side = 0; side < 4; side++) {
     const angle = (side * Math.PI) / 2;
@@ -135,7 +130,6 @@ export function buildBoundary(
   section: Section,
   nodesPerRound: number,
   order: number,
-  coarse: boolean,
   parts: Panel[][],
 ): Boundary {
   const bodies: Body[] = [];
@@ -146,7 +140,7 @@ export function buildBoundary(
       bodies.push({ turn, load: -1, start: n, count: nodesPerRound, round, panels: [], centre: ring });
       n += nodesPerRound;
     } else {
-      const panels = rectanglePanels(ring, section, coarse);
+      const panels = rectanglePanels(ring, section);
       bodies.push({
         turn,
         load: -1,

@@ -14,8 +14,6 @@ export interface Resolution {
   cornerLevels: number;
   /** First finite element in skin depths. */
   depthShare: number;
-  /** Coarse grading of rectangular tubes. */
-  coarse: boolean;
   /** Relative change of the impedance at which the permeability loop stops. */
   tolerance: number;
 }
@@ -50,7 +48,6 @@ export function resolutionOf(setting: SolverSetting, coil: RingCoil, parts: Part
     order: preview ? 2 : setting === 'fine' ? 4 : 3,
     cornerLevels: preview ? 2 : setting === 'fine' ? 3 : 2,
     depthShare: preview ? 1 : setting === 'fine' ? 0.5 : 0.7,
-    coarse: preview,
     tolerance: preview ? 3e-3 : setting === 'fine' ? 2e-4 : 1e-3,
   };
 }
@@ -118,17 +115,15 @@ export function prepareGeometry(coil: RingCoil, parts: PartBody[], wanted: Resol
       coil.section,
       resolution.nodesPerRound,
       resolution.order,
-      resolution.coarse,
       contours,
     );
     const unknowns = (boundary.n + coil.rings.length) / (symmetric ? 2 : 1);
     if (unknowns <= MOST_UNKNOWNS) return assemble(coil, parts, sizes, boundary, resolution, symmetric);
-    if (resolution.nodesPerRound > 6 || resolution.order > 2 || !resolution.coarse) {
+    if (resolution.nodesPerRound > 6 || resolution.order > 2) {
       resolution = {
         ...resolution,
         nodesPerRound: Math.max(6, resolution.nodesPerRound - 4),
         order: resolution.nodesPerRound <= 8 ? 2 : resolution.order,
-        coarse: resolution.nodesPerRound <= 8,
         cornerLevels: Math.min(1, resolution.cornerLevels),
       };
       continue;

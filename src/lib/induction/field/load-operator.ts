@@ -4,6 +4,7 @@ import type { Body, Boundary, Panel } from './boundary.ts';
 import { complexMatrix, type ComplexMatrix, type ComplexVector } from './complex-dense.ts';
 import type { LoadGrid } from './load-grid.ts';
 import { gaussLegendre, lagrange } from './quadrature.ts';
+import { addEntry, factorSkyline, skyline, solveSkyline, type Skyline } from './skyline.ts';
 
 /**
  * Quadratic finite elements for the azimuthal electric field in a part's section.
@@ -291,8 +292,7 @@ export interface LoadSolution {
 
 /**
  * Z = P·A⁻¹·(jωμ0 B) for resistivity per element (index iz·nr + ir) and permeability at its 9 Gauss points.
- * Banded complex symmetric L·D·Lᵀ without pivoting: safe, since the real and imaginary parts are positive
- * (semi)definite (Higham 1998).
+ * All boundary columns are solved at once in the factored system.
  */
 export function solveLoad(
   e: LoadElements,
@@ -301,22 +301,18 @@ export function solveLoad(
   permeability: Float64Array,
 ): LoadSolution {
   const n = e.nodes;
-  const w = e.halfBandwidth + 1;
-  const re = new Float64Array(n * w);
-  const im = new Float64Array(n * w);
-  stiffness(e, frequency, resistivity, permeability, re, im, w);
-  factorBand(n, w, re, im);
+  const a = skyline(Int32Array.from({ length: n }, (_, i) => Math.max(0, i - e.halfBandwidth)));
+  stiffness(e, frequency, resistivity, permeability, a);
+  factorSkyline(a);
   const cols = e.coupling.cols;
   const x = complexMatrix(n, cols);
   const omegaMu = 2 * Math.PI * frequency * MU0;
-  const start = new Int32Array(cols).fill(n);
   for (let j = 0; j < cols; j++) {
     const at = e.coupling.rows[j] as Int32Array;
     const value = e.coupling.values[j] as Float64Array;
     for (let k = 0; k < at.length; k++) x.im[(at[k] as number) * cols + j] = omegaMu * (value[k] as number);
-    if (at.length > 0) start[j] = at[0] as number;
   }
-  solveBand(n, w, re, im, x);
+  solveSkyline(a, x);
   const z = complexMatrix(e.evaluation.cols, cols);
   for (let i = 0; i < e.evaluation.cols; i++) {
     const at = e.evaluation.rows[i] as Int32Array;
@@ -333,15 +329,13 @@ export function solveLoad(
   return { z, fields: x };
 }
 
-/** Lower band storage: row i holds columns i − (w − 1) … i at [i·w + (j − i + w − 1)]. */
+/** Adds every element's matrix. */
 function stiffness(
   e: LoadElements,
   frequency: number,
   resistivity: Float64Array,
   permeability: Float64Array,
-  re: Float64Array,
-  im: Float64Array,
-  w: number,
+  into: Skyline,
 ): void {
   const omegaMu = 2 * Math.PI * frequency * MU0;
   const nnr = 2 * e.nr + 1;
@@ -390,107 +384,10 @@ function stiffness(
           const f = free[p] as number;
           const h = free[q] as number;
           if (f < 0 || h < 0) continue;
-          const row = Math.max(f, h);
-          const k = row * w + (Math.min(f, h) - row + w - 1);
-          re[k] = (re[k] as number) + (kr9[9 * p + q] as number);
-          im[k] = (im[k] as number) + (km9[9 * p + q] as number);
+          addEntry(into, f, h, kr9[9 * p + q] as number, km9[9 * p + q] as number);
         }
       }
     }
-  }
-}
-
-/** In place: the band becomes L (unit diagonal) with 1/D kept on the diagonal. */
-function factorBand(n: number, w: number, re: Float64Array, im: Float64Array): void {
-  const hb = w - 1;
-  const vr = new Float64Array(w);
-  const vi = new Float64Array(w);
-  for (let i = 0; i < n; i++) {
-    const first = Math.max(0, i - hb);
-    const ri = i * w + hb - i;
-    // v_j = L_ij·D_j, built column by column.
-    for (let j = first; j < i; j++) {
-      const rj = j * w + hb - j;
-      let sr = re[ri + j] as number;
-      let si = im[ri + j] as number;
-      const from = Math.max(first, j - hb);
-      for (let k = from; k < j; k++) {
-        const ar = vr[k - first] as number;
-        const ai = vi[k - first] as number;
-        const br = re[rj + k] as number;
-        const bi = im[rj + k] as number;
-        sr -= ar * br - ai * bi;
-        si -= ar * bi + ai * br;
-      }
-      vr[j - first] = sr;
-      vi[j - first] = si;
-    }
-    let dr = re[ri + i] as number;
-    let di = im[ri + i] as number;
-    for (let j = first; j < i; j++) {
-      const ar = vr[j - first] as number;
-      const ai = vi[j - first] as number;
-      // 1/D_j stands on the diagonal.
-      const qr = re[j * w + hb] as number;
-      const qi = im[j * w + hb] as number;
-      const lr = ar * qr - ai * qi;
-      const li = ar * qi + ai * qr;
-      re[ri + j] = lr;
-      im[ri + j] = li;
-      dr -= ar * lr - ai * li;
-      di -= ar * li + ai * lr;
-    }
-    const d = dr * dr + di * di;
-    re[ri + i] = dr / d;
-    im[ri + i] = -di / d;
-  }
-}
-
-function solveBand(n: number, w: number, re: Float64Array, im: Float64Array, x: ComplexMatrix): void {
-  const hb = w - 1;
-  const m = x.cols;
-  const xr = x.re;
-  const xi = x.im;
-  for (let i = 0; i < n; i++) {
-    const ri = i * w + hb - i;
-    for (let k = Math.max(0, i - hb); k < i; k++) {
-      axpy(xr, xi, m, i * m, k * m, re[ri + k] as number, im[ri + k] as number);
-    }
-  }
-  for (let i = 0; i < n; i++) {
-    const qr = re[i * w + hb] as number;
-    const qi = im[i * w + hb] as number;
-    for (let j = i * m; j < i * m + m; j++) {
-      const r = xr[j] as number;
-      const q = xi[j] as number;
-      xr[j] = r * qr - q * qi;
-      xi[j] = r * qi + q * qr;
-    }
-  }
-  for (let i = n - 1; i >= 0; i--) {
-    const ri = i * w + hb - i;
-    for (let k = Math.max(0, i - hb); k < i; k++) {
-      axpy(xr, xi, m, k * m, i * m, re[ri + k] as number, im[ri + k] as number);
-    }
-  }
-}
-
-/** x[target] −= f·x[source] over m columns. */
-function axpy(
-  xr: Float64Array,
-  xi: Float64Array,
-  m: number,
-  target: number,
-  source: number,
-  fr: number,
-  fi: number,
-): void {
-  if (fr === 0 && fi === 0) return;
-  for (let j = 0; j < m; j++) {
-    const r = xr[source + j] as number;
-    const q = xi[source + j] as number;
-    xr[target + j] = (xr[target + j] as number) - (fr * r - fi * q);
-    xi[target + j] = (xi[target + j] as number) - (fr * q + fi * r);
   }
 }
 
