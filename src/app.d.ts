@@ -1,4 +1,5 @@
 import type { Actor } from '$lib/domain/actor.ts';
+import type { SessionState } from '$lib/server/auth/index.ts';
 
 declare global {
   namespace App {
@@ -8,9 +9,13 @@ declare global {
       requestId?: string;
     }
     interface Locals {
+      /** The signed-in person with all memberships; null for visitors and on pages without a session. */
       actor: Actor | null;
+      session: SessionState | null;
       sessionId: string | null;
       requestId: string;
+      /** Where the request comes from, proxies taken into account. */
+      address: string;
     }
   }
 }

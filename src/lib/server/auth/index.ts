@@ -25,5 +25,6 @@ export {
   verifyAddress,
   type SignInContext,
 } from './flows.ts';
+export { auth, provideAuth, signInContext } from './instance.ts';
 export { passwordLength } from './password.ts';
 export { requireFreshSession, resolveVisitor, type SessionState } from './session.ts';
