@@ -22,7 +22,11 @@ function assertLimit(limit: number, name: string): void {
 }
 
 /** One page of a v1 list, newest first. */
-export function listPage<T extends Row>(oldestFirst: T[], params: PageParams, url: string): Stripe.ApiList<T> {
+export function listPage<T extends Row>(
+  oldestFirst: T[],
+  params: PageParams,
+  url: string,
+): Stripe.ApiList<T> {
   const limit = params.limit ?? 10;
   assertLimit(limit, 'limit');
   const rows = [...oldestFirst].reverse();

@@ -244,6 +244,33 @@ const destinationRoutes = [
         params.include?.filter((name) => name !== 'webhook_endpoint.signing_secret'),
       ),
   ),
+  route(
+    'POST',
+    '/v2/core/event_destinations/:id',
+    z.strictObject({
+      name: text(200).optional(),
+      description: text(1000).optional(),
+      enabled_events: z.array(text()).min(1).optional(),
+      webhook_endpoint: z.strictObject({ url: url() }).optional(),
+      metadata: metadata(),
+      include: destinationInclude(),
+    }),
+    (service, params, id) => {
+      const record = findDestination(service, id);
+      const { object } = record;
+      if (params.name !== undefined) object.name = params.name;
+      if (params.description !== undefined) object.description = params.description;
+      if (params.enabled_events !== undefined) object.enabled_events = params.enabled_events;
+      if (params.webhook_endpoint !== undefined) record.url = params.webhook_endpoint.url;
+      object.metadata = mergeMetadata(object.metadata ?? {}, params.metadata);
+      object.updated = service.nowIso();
+      service.store.tables.destinations.put(id, record);
+      return renderDestination(
+        record,
+        params.include?.filter((name) => name !== 'webhook_endpoint.signing_secret'),
+      );
+    },
+  ),
   route('DELETE', '/v2/core/event_destinations/:id', z.strictObject({}), (service, _params, id) => {
     findDestination(service, id);
     service.store.tables.destinations.delete(id);
