@@ -520,6 +520,7 @@ CREATE TABLE `payment_event` (
 	`endpoint` text NOT NULL,
 	`type` text NOT NULL,
 	`object_id` text NOT NULL,
+	`reference` text NOT NULL,
 	`created` integer NOT NULL,
 	`received_at` integer NOT NULL,
 	`source` text NOT NULL,
@@ -543,6 +544,7 @@ CREATE TABLE `payment_operation` (
 	`state` text NOT NULL,
 	`attempts` integer DEFAULT 0 NOT NULL,
 	`object_id` text,
+	`result` text,
 	`error_code` text,
 	`last_error` text,
 	`planned_at` integer NOT NULL,
@@ -585,7 +587,7 @@ CREATE TABLE `payment_session` (
 );
 --> statement-breakpoint
 CREATE UNIQUE INDEX `payment_session_session_id_unique` ON `payment_session` (`session_id`);--> statement-breakpoint
-CREATE UNIQUE INDEX `payment_session_open` ON `payment_session` (`milestone_id`) WHERE state in ('opening', 'open');--> statement-breakpoint
+CREATE UNIQUE INDEX `payment_session_open` ON `payment_session` (`milestone_id`) WHERE state in ('opening', 'open', 'processing');--> statement-breakpoint
 CREATE UNIQUE INDEX `payment_session_paid` ON `payment_session` (`milestone_id`) WHERE state = 'paid';--> statement-breakpoint
 CREATE UNIQUE INDEX `payment_session_attempt` ON `payment_session` (`milestone_id`,`attempt`);--> statement-breakpoint
 CREATE INDEX `payment_session_intent` ON `payment_session` (`payment_intent_id`);--> statement-breakpoint

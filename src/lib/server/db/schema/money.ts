@@ -92,6 +92,8 @@ export const paymentOperation = sqliteTable(
     state: text('state', { enum: operationStates }).notNull(),
     attempts: integer('attempts').notNull().default(0),
     objectId: text('object_id'),
+    /** What the service answered, as far as the next steps need it. */
+    result: json<Record<string, unknown>>('result'),
     errorCode: text('error_code'),
     lastError: text('last_error'),
     plannedAt: instant('planned_at').notNull(),
@@ -120,7 +122,8 @@ export const paymentEvent = sqliteTable(
     endpoint: text('endpoint', { enum: ['payments', 'accounts'] }).notNull(),
     type: text('type').notNull(),
     objectId: text('object_id').notNull(),
-    /** Ids only; the object itself is fetched when it is processed. */
+    /** The metadata of the object; the object itself is fetched when it is processed. */
+    reference: json<Record<string, string>>('reference').notNull(),
     created: instant('created').notNull(),
     receivedAt: instant('received_at').notNull(),
     source: text('source', { enum: ['webhook', 'backfill'] }).notNull(),
@@ -162,7 +165,9 @@ export const paymentSession = sqliteTable(
     url: text('url'),
     amount: integer('amount').notNull(),
     currency: currency(),
-    state: text('state', { enum: ['opening', 'open', 'paid', 'lapsed', 'surplus', 'quarantined'] }).notNull(),
+    state: text('state', {
+      enum: ['opening', 'open', 'processing', 'paid', 'lapsed', 'surplus', 'quarantined'],
+    }).notNull(),
     paymentIntentId: text('payment_intent_id'),
     chargeId: text('charge_id'),
     openedBy: text('opened_by').references(() => user.id, { onDelete: 'restrict' }),
@@ -175,7 +180,7 @@ export const paymentSession = sqliteTable(
   (table) => [
     uniqueIndex('payment_session_open')
       .on(table.milestoneId)
-      .where(sql`state in ('opening', 'open')`),
+      .where(sql`state in ('opening', 'open', 'processing')`),
     uniqueIndex('payment_session_paid')
       .on(table.milestoneId)
       .where(sql`state = 'paid'`),
