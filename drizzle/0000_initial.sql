@@ -247,6 +247,7 @@ CREATE TABLE `invitation` (
 --> statement-breakpoint
 CREATE UNIQUE INDEX `invitation_token_hash_unique` ON `invitation` (`token_hash`);--> statement-breakpoint
 CREATE INDEX `invitation_company` ON `invitation` (`company_id`);--> statement-breakpoint
+CREATE UNIQUE INDEX `invitation_open` ON `invitation` (`company_id`,`email`) WHERE state = 'open';--> statement-breakpoint
 CREATE TABLE `membership` (
 	`id` text PRIMARY KEY NOT NULL,
 	`company_id` text NOT NULL,

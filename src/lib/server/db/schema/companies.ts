@@ -1,3 +1,4 @@
+import { sql } from 'drizzle-orm';
 import { index, integer, sqliteTable, text, uniqueIndex } from 'drizzle-orm/sqlite-core';
 import type { Role } from '../../../domain/roles.ts';
 import { user } from './auth.ts';
@@ -80,7 +81,13 @@ export const invitation = sqliteTable(
     acceptedBy: text('accepted_by').references(() => user.id, { onDelete: 'restrict' }),
     version: version(),
   },
-  (table) => [index('invitation_company').on(table.companyId)],
+  (table) => [
+    index('invitation_company').on(table.companyId),
+    // One open invitation per person and company, also for a double click.
+    uniqueIndex('invitation_open')
+      .on(table.companyId, table.email)
+      .where(sql`state = 'open'`),
+  ],
 );
 
 export const companyAddress = sqliteTable(
