@@ -118,7 +118,12 @@ export function rectanglePanels(centre: Ring, section: Section & { kind: 'rectan
       const mz = Math.round(Math.sin(next));
       const cr = centre.radius + (nr + mr) * (hr - c);
       const cz = centre.z + (nz + mz) * (hz - c);
-      panels.push(arcPanel(cr, cz, c, angle, next));
+      // A large radius takes the place of the flats: two panels, or its current is resolved too coarsely.
+      const pieces = c > 0.3 * Math.min(hr, hz) ? 2 : 1;
+      for (let k = 0; k < pieces; k++) {
+        const step = (next - angle) / pieces;
+        panels.push(arcPanel(cr, cz, c, angle + k * step, angle + (k + 1) * step));
+      }
     }
   }
   return panels;

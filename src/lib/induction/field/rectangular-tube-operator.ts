@@ -39,7 +39,10 @@ export function rectangularTubeOperator(
   frequency: number,
 ): ComplexMatrix {
   const centre = body.centre ?? { radius: 0, z: 0 };
-  const upper = body.panels.filter((panel) => panel.z > centre.z);
+  const upper = body.panels.filter((panel) => {
+    pointOn(panel, 0);
+    return (point[1] as number) > centre.z;
+  });
   const layers = layersOf(section, skinDepth(resistivity, frequency));
   const mesh = meshOf(upper, section, centre, layers);
   const even = halfOperator(b, upper, mesh, false, resistivity, frequency);
