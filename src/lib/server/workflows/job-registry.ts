@@ -1,4 +1,10 @@
 import type { JobDefinition } from '../jobs/index.ts';
+import { announceRequest } from './announce-request.ts';
+
+/** The queue hands each job only a payload that its own schema has parsed, so the list may forget the types. */
+function registered<Payload>(definition: JobDefinition<Payload>): JobDefinition<never> {
+  return definition as unknown as JobDefinition<never>;
+}
 
 /** Every kind of background job. A domain adds its definition here; the handler loads when first run. */
-export const jobDefinitions: readonly JobDefinition<never>[] = [];
+export const jobDefinitions: readonly JobDefinition<never>[] = [registered(announceRequest)];

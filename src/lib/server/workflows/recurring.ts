@@ -1,4 +1,5 @@
 import type { Database } from '../db/index.ts';
+import { runRequestDeadlines } from './request-deadlines.ts';
 
 export interface RecurringTask {
   name: string;
@@ -7,4 +8,6 @@ export interface RecurringTask {
 }
 
 /** What the worker does again and again: deadlines, recovery of outside calls, probes, sealing the audit trail. */
-export const recurringTasks: readonly RecurringTask[] = [];
+export const recurringTasks: readonly RecurringTask[] = [
+  { name: 'request-deadlines', everyMs: 5_000, run: runRequestDeadlines },
+];
