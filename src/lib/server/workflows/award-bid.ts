@@ -101,12 +101,15 @@ async function askApproval(tx: Tx, actor: Actor, bidRow: BidRow, requestRow: Req
 async function orderSpecificationBody(tx: Tx, bidRow: BidRow, requestRow: RequestRow): Promise<string> {
   const [spec] = await tx.select().from(specification).where(eq(specification.id, bidRow.specificationId));
   if (!spec) throw new AppError('not-found');
+  const frozen = JSON.parse(spec.body) as { requirement: unknown; check?: unknown };
   const exceptions = await exceptionsOf(tx, [bidRow.id]);
   const terms = requestRow.commercial;
   return JSON.stringify({
     kind: 'order-specification',
     request: { id: requestRow.id, number: requestRow.number, title: requestRow.title },
-    specification: { number: spec.number, hash: spec.hash, body: JSON.parse(spec.body) as unknown },
+    specification: { number: spec.number, hash: spec.hash },
+    requirement: frozen.requirement,
+    check: frozen.check ?? null,
     acceptedExceptions: exceptions
       .filter((row) => row.state === 'accepted')
       .map(({ subject, text }) => ({ subject, text })),
@@ -164,8 +167,7 @@ async function award(tx: Tx, actor: Actor, bidRow: BidRow, requestRow: RequestRo
     specificationId: bidRow.specificationId,
     orderSpecificationBody: await orderSpecificationBody(tx, awarded, requestRow),
     currency: bidRow.currency,
-    // The order's net is without freight: the platform's fee is on it alone.
-    netAmount: bidRow.netAmount - bidRow.freightAmount,
+    netAmount: bidRow.netAmount,
     taxAmount: bidRow.taxAmount,
     freightAmount: bidRow.freightAmount,
     totalAmount: bidRow.totalAmount,
