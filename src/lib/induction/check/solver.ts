@@ -1,0 +1,77 @@
+/** The field solution as the check asks it: one place that counts, reports progress and can be stopped. */
+import { solveImpedance } from '../field/solve-impedance.ts';
+import { InductionInputError } from '../input-error.ts';
+import type { Coil, ImpedanceAnswer, Requirement, SolverSetting, Workpiece } from './types.ts';
+
+/** Thrown when the caller's `shouldStop` says so. */
+export class CheckStoppedError extends Error {
+  constructor() {
+    super('The check was stopped.');
+    this.name = 'CheckStoppedError';
+  }
+}
+
+export interface CheckOptions {
+  setting: SolverSetting;
+  /** Share of the work done, 0 to 1. */
+  onProgress?: (share: number) => void;
+  /** Asked between field solutions; true ends the check with CheckStoppedError. */
+  shouldStop?: () => boolean;
+  /** False leaves the bands out (model error only): nominal figures first. Default true. */
+  bands?: boolean;
+}
+
+export interface Question {
+  coil: Coil;
+  part: Workpiece | null;
+  frequency: number;
+  state: 'cold' | 'hot';
+  current: number;
+  includeLeads: boolean;
+  setting: SolverSetting;
+}
+
+export class Solver {
+  readonly refusals: InductionInputError[] = [];
+  private count = 0;
+  private readonly expected: number;
+
+  constructor(
+    private readonly requirement: Requirement,
+    private readonly options: CheckOptions,
+  ) {
+    this.expected = options.bands === false ? 25 : 80;
+  }
+
+  /** null when the method refuses the question; the reason is kept in `refusals`. */
+  ask(question: Question): ImpedanceAnswer | null {
+    if (this.options.shouldStop?.()) throw new CheckStoppedError();
+    this.count += 1;
+    this.options.onProgress?.(Math.min(0.95, this.count / this.expected));
+    const { process } = this.requirement;
+    try {
+      const answer = solveImpedance({
+        ...question,
+        startTemperatureC: process.startTemperatureC,
+        targetTemperatureC: process.targetTemperatureC,
+      });
+      return usable(answer) ? answer : null;
+    } catch (error) {
+      if (!(error instanceof InductionInputError)) throw error;
+      if (!this.refusals.some((one) => one.code === error.code && one.field === error.field))
+        this.refusals.push(error);
+      return null;
+    }
+  }
+}
+
+/** A silent wrong number is worse than none. */
+function usable(answer: ImpedanceAnswer): boolean {
+  return (
+    Number.isFinite(answer.inductance) &&
+    answer.inductance > 0 &&
+    Number.isFinite(answer.resistance) &&
+    answer.resistance > 0 &&
+    Number.isFinite(answer.loadResistance)
+  );
+}
