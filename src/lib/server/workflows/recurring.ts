@@ -1,3 +1,4 @@
+import { lapseBids } from '../bids/index.ts';
 import type { Database } from '../db/index.ts';
 import { runRequestDeadlines } from './request-deadlines.ts';
 
@@ -10,4 +11,11 @@ export interface RecurringTask {
 /** What the worker does again and again: deadlines, recovery of outside calls, probes, sealing the audit trail. */
 export const recurringTasks: readonly RecurringTask[] = [
   { name: 'request-deadlines', everyMs: 5_000, run: runRequestDeadlines },
+  {
+    name: 'bid-validity',
+    everyMs: 30_000,
+    run: async (db) => {
+      await lapseBids(db);
+    },
+  },
 ];
