@@ -6,6 +6,8 @@ export const permissions = [
   'company.members',
   'company.payouts',
   'company.documents',
+  'verification.ask',
+  'directory.view',
   // machines and requests (buyer)
   'machine.view',
   'machine.edit',

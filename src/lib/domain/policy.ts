@@ -48,6 +48,10 @@ export function can(actor: Actor | null, permission: Permission, object: AccessO
       return has(actor, object.companyId, 'fabricator', ['owner']);
     case 'company.documents':
       return has(actor, object.companyId, 'any', ['owner', 'engineer', 'purchaser', 'estimator', 'builder']);
+    case 'verification.ask':
+      return has(actor, object.companyId, 'fabricator', ['owner']);
+    case 'directory.view':
+      return actor.memberships.length > 0 || actor.isAdmin;
 
     case 'machine.view':
     case 'request.view-own':

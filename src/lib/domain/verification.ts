@@ -14,14 +14,16 @@ export const verificationMachine = defineStateMachine({
 });
 export type VerificationState = (typeof verificationMachine.states)[number];
 
-/** Shapes a shop can say it makes, in the words of the requirement. */
+/** Shapes a shop can say it makes; the keys are those of a requirement's coil. */
 export const coilShapeCapabilities = {
-  'cylindrical-helix': 'Cylindrical helix',
-  'stepped-helix': 'Stepped or conical helix',
+  helix: 'Cylindrical helix',
+  conical: 'Conical helix',
+  stepped: 'Stepped helix',
   pancake: 'Pancake',
   'single-turn': 'Single turn',
-  'bore-coil': 'Bore coil',
-  racetrack: 'Racetrack or rectangular helix',
+  bore: 'Bore coil',
+  racetrack: 'Racetrack',
+  'rectangular-helix': 'Rectangular helix',
   hairpin: 'Hairpin',
   channel: 'Channel',
 } as const;
@@ -72,3 +74,11 @@ export const verifiedItems = {
   'quality-system': 'A certificate of a quality system was shown',
 } as const;
 export type VerifiedItem = keyof typeof verifiedItems;
+
+/** A verification is given for this long at most; then it is asked for again. */
+export const verificationMaxDays = 3 * 366;
+
+/** Keys of a table of words, with their type. */
+export function keysOf<T extends Record<string, string>>(table: T): (keyof T & string)[] {
+  return Object.keys(table) as (keyof T & string)[];
+}
