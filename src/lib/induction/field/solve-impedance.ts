@@ -4,6 +4,8 @@ import { InductionInputError, requireWithin } from '../input-error.ts';
 import { copperResistivity, materialOf } from '../materials/material-of.ts';
 import { coilBlock, solveField, type CoilBlock, type FieldSolution } from './coil-block.ts';
 import { prepareGeometry, resolutionOf, type FieldGeometry } from './field-geometry.ts';
+import { leadGeometry, leadResistance, type LeadGeometry } from './lead-circuit.ts';
+import { loopImpedance } from './loop-impedance.ts';
 import { isSaturating, partModel, solveParts } from './part-model.ts';
 import { copperTemperature, partTemperature } from './thermal-state.ts';
 
@@ -16,6 +18,8 @@ export interface PreparedCoil {
   geometry: FieldGeometry;
   /** Factored coils by frequency and copper resistivity, the few last used. */
   blocks: Map<string, CoilBlock>;
+  /** Leads and legs, once asked for; null when the coil has none entered. */
+  leads: LeadGeometry | null | undefined;
 }
 
 /** One operating state of a prepared coil (the part of an impedance query that is not geometry). */
@@ -36,7 +40,7 @@ export function prepareCoil(coil: Coil, part: Workpiece | null, setting: SolverS
   const rings = ringCoil(coil, part);
   const bodies = part === null ? [] : [partBody(part, coil, rings)];
   const geometry = prepareGeometry(rings, bodies, resolutionOf(setting, rings, bodies));
-  return { coil, part, setting, rings, geometry, blocks: new Map() };
+  return { coil, part, setting, rings, geometry, blocks: new Map(), leads: undefined };
 }
 
 /** The factored coil at a frequency; the last four are kept. */
@@ -133,9 +137,26 @@ function answerOf(
   const own = field.turnPower.reduce((sum, p) => sum + p, 0);
   const load = field.partPower.reduce((sum, p) => sum + p, 0);
   const loadResistance = load * scale * scale;
-  const resistance = own * scale + loadResistance;
+  let resistance = own * scale + loadResistance;
+  let inductance = (field.reactance / omega) * scale * scale;
+  if (state.includeLeads) {
+    prepared.leads ??= leadGeometry(prepared.coil, rings);
+    const leads = prepared.leads;
+    if (leads === null) assumptions.push('No leads are entered: the figures end at the turns.');
+    else {
+      const rho = copperResistivity(prepared.coil.copperGrade, copperTemperature(prepared.coil));
+      const share = leads.inductance / inductance;
+      inductance += leads.inductance;
+      resistance += leadResistance(leads, rings.section, rho, state.frequency);
+      // Two per cent of the coil for legs that are not drawn, and of the leads themselves.
+      inductanceError = Math.hypot(inductanceError, 0.01, 0.02 * Math.min(1, Math.abs(share)));
+      assumptions.push(
+        'Leads as entered, legs one and a half tube sizes off the turns, closed at the contact face.',
+      );
+    }
+  }
   return {
-    inductance: (field.reactance / omega) * scale * scale,
+    inductance,
     resistance,
     loadResistance,
     efficiency: loadResistance / resistance,
@@ -175,11 +196,8 @@ function prepareOnce(query: ImpedanceQuery): PreparedCoil {
  */
 export function solveImpedance(query: ImpedanceQuery): ImpedanceAnswer {
   if (!isAxisymmetric(query.coil.winding)) {
-    throw new InductionInputError(
-      'outside-method',
-      'coil.winding.shape',
-      `A ${query.coil.winding.shape} coil is not solved yet.`,
-    );
+    requireWithin(query.frequency, FREQUENCY_LIMITS[0], FREQUENCY_LIMITS[1], 'frequency', 'Frequency');
+    return loopImpedance(query);
   }
   return impedanceAt(prepareOnce(query), query);
 }

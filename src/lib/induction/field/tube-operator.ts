@@ -75,6 +75,29 @@ export function roundTubeOperator(
   return z;
 }
 
+/**
+ * Internal impedance of a straight round tube or rod alone, Ω per metre (uniform around, current of 1 A):
+ * Z = jωμ0/(2π·X0), X0 the mode-0 ratio at the outside; the real part is the AC resistance.
+ *
+ * @param a outside radius, m   @param wall m; ≥ a means solid   Range: direct current to thin skin.
+ * Source: Bessel solution of the tube, carried by layers. Example: 1/4 in × 0.030 in copper at 20 °C,
+ * 10 kHz → 1.4535 mΩ/m.
+ */
+export function straightTubeImpedance(
+  a: number,
+  wall: number,
+  resistivity: number,
+  frequency: number,
+): { re: number; im: number } {
+  const edges = layerEdges(a, wall, skinDepth(resistivity, frequency));
+  const k2 = (2 * Math.PI * frequency * MU0) / resistivity;
+  const x = modeRatio(0, edges, wall >= a * (1 - 1e-9), k2);
+  const d = x.re * x.re + x.im * x.im;
+  // jc/(x.re + j x.im) with c = ωμ0/2π
+  const c = frequency * MU0;
+  return { re: (c * x.im) / d, im: (c * x.re) / d };
+}
+
 /** Radii of the layers from the bore (or the solid core's start) to the outside, ascending. */
 function layerEdges(a: number, wall: number, delta: number): number[] {
   const solid = wall >= a * (1 - 1e-9);
