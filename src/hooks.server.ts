@@ -25,7 +25,14 @@ export const init: ServerInit = async () => {
 };
 
 /** Pages and endpoints that are the same for everyone: no session is looked up for them. */
-const withoutSession = [/^\/$/, /^\/bench$/, /^\/styleguide/, /^\/\(public\)/, /^\/api\/health$/, /^\/api\/webhooks\//];
+const withoutSession = [
+  /^\/$/,
+  /^\/bench$/,
+  /^\/styleguide/,
+  /^\/\(public\)/,
+  /^\/api\/health$/,
+  /^\/api\/webhooks\//,
+];
 
 export const handle: Handle = async ({ event, resolve }) => {
   event.locals.actor = null;
@@ -73,14 +80,18 @@ export const handle: Handle = async ({ event, resolve }) => {
 
 export const handleError: HandleServerError = ({ error, event, status, message }) => {
   const { requestId } = event.locals;
-  if (status === 404) return { message: 'There is nothing here, or it is not yours to see.', code: 'not-found', requestId };
+  if (status === 404)
+    return { message: 'There is nothing here, or it is not yours to see.', code: 'not-found', requestId };
   if (status === 413) return { message: 'That is larger than allowed.', code: 'too-large', requestId };
   if (status < 500) return { message, requestId };
   log().error(
     {
       requestId,
       route: event.route.id,
-      error: error instanceof Error ? { name: error.name, message: error.message, stack: error.stack } : String(error),
+      error:
+        error instanceof Error
+          ? { name: error.name, message: error.message, stack: error.stack }
+          : String(error),
     },
     'unexpected error',
   );

@@ -2,7 +2,6 @@ import { createOTP } from '@better-auth/utils/otp';
 import { eq } from 'drizzle-orm';
 import { afterEach, beforeEach, expect, test } from 'vitest';
 import type { Actor } from '../../../src/lib/domain/actor.ts';
-import { AppError } from '../../../src/lib/domain/errors.ts';
 import {
   answerSecondFactor,
   askAddressChange,
@@ -27,6 +26,7 @@ import { auditEvent } from '../../../src/lib/server/db/schema/platform.ts';
 import { aBrowser, type Browser } from '../../support/auth.ts';
 import { testDatabase, type TestDatabase } from '../../support/db.ts';
 import { pathIn } from '../../support/mail.ts';
+import { refusal } from '../../support/refusal.ts';
 
 let t: TestDatabase;
 beforeEach(async () => {
@@ -35,15 +35,6 @@ beforeEach(async () => {
 afterEach(() => t.close());
 
 const password = 'quench ring otter';
-
-async function refusal(work: Promise<unknown>): Promise<AppError> {
-  const problem: unknown = await work.then(
-    () => undefined,
-    (e: unknown) => e,
-  );
-  expect(problem).toBeInstanceOf(AppError);
-  return problem as AppError;
-}
 
 async function signedIn(email: string, address?: string) {
   const browser = aBrowser(t.db, address);

@@ -1,6 +1,6 @@
 import { eq } from 'drizzle-orm';
 import { afterEach, beforeEach, expect, test } from 'vitest';
-import { AppError } from '../../../src/lib/domain/errors.ts';
+import type { AppError } from '../../../src/lib/domain/errors.ts';
 import {
   askPasswordReset,
   resetPassword,
@@ -16,6 +16,7 @@ import { outboxMail } from '../../../src/lib/server/db/schema/platform.ts';
 import { aBrowser } from '../../support/auth.ts';
 import { testDatabase, type TestDatabase } from '../../support/db.ts';
 import { pathIn } from '../../support/mail.ts';
+import { refusal } from '../../support/refusal.ts';
 
 let t: TestDatabase;
 beforeEach(async () => {
@@ -29,15 +30,6 @@ const person = {
   password: 'quench ring otter',
 };
 const credentials = { email: person.email, password: person.password, remember: true };
-
-async function refusal(work: Promise<unknown>): Promise<AppError> {
-  const problem: unknown = await work.then(
-    () => undefined,
-    (e: unknown) => e,
-  );
-  expect(problem).toBeInstanceOf(AppError);
-  return problem as AppError;
-}
 
 async function signedUp() {
   const browser = aBrowser(t.db);

@@ -42,7 +42,10 @@ export const updateCompanyForm = z.object({
 });
 
 const allRoles = [...new Set<Role>([...buyerRoles, ...fabricatorRoles])];
-const roles = z.array(z.enum(allRoles, 'This role does not exist.')).min(1, 'Choose at least one role.').max(8);
+const roles = z
+  .array(z.enum(allRoles, 'This role does not exist.'))
+  .min(1, 'Choose at least one role.')
+  .max(8);
 
 export const inviteForm = z.object({ email: emailField, roles });
 export const withdrawInvitationForm = z.object({ invitationId: id, version });
@@ -58,7 +61,10 @@ export const approvalLimitForm = z.object({
       if (text === '') return null;
       const amount = parseAmount(text);
       if (amount === undefined) {
-        context.addIssue({ code: 'custom', message: 'Enter an amount such as 5000.00, or nothing for no limit.' });
+        context.addIssue({
+          code: 'custom',
+          message: 'Enter an amount such as 5000.00, or nothing for no limit.',
+        });
         return z.NEVER;
       }
       if (amount > 10_000_000_000) {

@@ -15,7 +15,10 @@ export const personName = z
   .trim()
   .min(1, 'Enter a name.')
   .max(80, 'A name has 80 characters at most.')
-  .refine((name) => !/[\p{Cc}\p{Cf}<>]/u.test(name), 'A name has no control characters and no angle brackets.');
+  .refine(
+    (name) => !/[\p{Cc}\p{Cf}<>]/u.test(name),
+    'A name has no control characters and no angle brackets.',
+  );
 
 export const timeZoneField = z.string().refine(isTimeZone, 'Choose a time zone of the list.');
 export const checkbox = z
@@ -23,7 +26,8 @@ export const checkbox = z
   .optional()
   .transform((value) => value === 'on');
 /** Passwords are taken as they are typed; the rule for new ones is the server's. */
-const password = (words: string) => z.string().min(1, words).max(512, 'A password has 128 characters at most.');
+const password = (words: string) =>
+  z.string().min(1, words).max(512, 'A password has 128 characters at most.');
 
 export const signInForm = z.object({
   email: emailField,
@@ -55,7 +59,11 @@ export const secondFactorForm = z.discriminatedUnion('kind', [
   z.object({ kind: z.literal('totp'), code, trustDevice: checkbox }),
   z.object({
     kind: z.literal('backup'),
-    code: z.string().trim().min(1, 'Enter one of your backup codes.').max(40, 'That is longer than a backup code.'),
+    code: z
+      .string()
+      .trim()
+      .min(1, 'Enter one of your backup codes.')
+      .max(40, 'That is longer than a backup code.'),
     trustDevice: checkbox,
   }),
 ]);

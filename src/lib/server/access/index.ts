@@ -2,6 +2,7 @@ import type { Actor } from '../../domain/actor.ts';
 import { AppError } from '../../domain/errors.ts';
 import type { Permission } from '../../domain/permissions.ts';
 import { can, type AccessObject } from '../../domain/policy.ts';
+import { config } from '../config/index.ts';
 
 export { can };
 export type { AccessObject };
@@ -35,4 +36,9 @@ export function requireAccess(
 /** Posting, bidding, accepting and money need a confirmed e-mail address. */
 export function requireVerifiedEmail(actor: Actor): void {
   if (!actor.emailVerified) throw new AppError('email-not-verified');
+}
+
+/** Payouts and roles: in production the person must have set up a second factor. */
+export function requireSecondFactor(actor: Actor): void {
+  if (config().mode === 'production' && !actor.twoFactor) throw new AppError('two-factor-needed');
 }
