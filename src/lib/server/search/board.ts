@@ -1,5 +1,6 @@
 import { and, asc, eq, gt, gte, inArray, lte, sql, type SQL } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
+import { dayMs } from '../../domain/dates.ts';
 import { boardSchema, type Board } from '../../schemas/api/board.ts';
 import { materialName } from '../../schemas/forms/materials.ts';
 import { requireAccess } from '../access/index.ts';
@@ -18,8 +19,8 @@ export interface BoardFilter {
   tubeMax?: number;
   quantityMin?: number;
   quantityMax?: number;
-  /** Bids close before this instant. */
-  closesBefore?: number;
+  /** Bids close within so many days. */
+  closesWithinDays?: number;
   /** End of the page before. */
   after?: string;
 }
@@ -46,7 +47,9 @@ function conditions(filter: BoardFilter, now: number): SQL[] {
   if (filter.tubeMax !== undefined) wanted.push(lte(request.tubeSize, filter.tubeMax + 5e-7));
   if (filter.quantityMin !== undefined) wanted.push(gte(request.quantity, filter.quantityMin));
   if (filter.quantityMax !== undefined) wanted.push(lte(request.quantity, filter.quantityMax));
-  if (filter.closesBefore !== undefined) wanted.push(lte(request.closesAt, filter.closesBefore));
+  if (filter.closesWithinDays !== undefined) {
+    wanted.push(lte(request.closesAt, now + filter.closesWithinDays * dayMs));
+  }
   const match = filter.text ? matchOf(filter.text) : null;
   if (match) {
     wanted.push(
