@@ -91,7 +91,9 @@ function leadsInSection(input: SectionInput): {
   let out: Point;
   if (faceGap !== null || leadExit === 'axial') {
     const x = Math.min(start[0], end[0]) - tube.width / 2 - leads.length;
-    const apart = faceGap !== null ? end[1] : Math.min(start[1], end[1]) - leads.spacing;
+    // Inside a part the lead from the far end comes back through the winding, else below it.
+    const aside = input.inside ? leads.spacing : -leads.spacing;
+    const apart = faceGap !== null ? end[1] : Math.min(start[1], end[1]) + aside;
     ends = [
       [x, start[1]],
       [x, apart],
@@ -278,7 +280,7 @@ function leadDimensions(
     const apart = verticalDimension(
       one[1],
       other[1],
-      one[0] - t * 5.5,
+      one[0] - t * 11,
       one[0],
       one[0],
       label(Math.abs(one[1] - other[1])),
