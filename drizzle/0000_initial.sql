@@ -890,6 +890,7 @@ CREATE TABLE `audit_event` (
 --> statement-breakpoint
 CREATE INDEX `audit_subject` ON `audit_event` (`subject_type`,`subject_id`);--> statement-breakpoint
 CREATE INDEX `audit_company` ON `audit_event` (`company_id`,`at`);--> statement-breakpoint
+CREATE INDEX `audit_seal_rows` ON `audit_event` (`seal`,`id`);--> statement-breakpoint
 CREATE INDEX `audit_unsealed` ON `audit_event` (`id`) WHERE "audit_event"."seal" is null;--> statement-breakpoint
 CREATE TABLE `job` (
 	`id` text PRIMARY KEY NOT NULL,
@@ -921,6 +922,7 @@ CREATE TABLE `notification` (
 );
 --> statement-breakpoint
 CREATE INDEX `notification_user` ON `notification` (`user_id`,`read_at`,`at`);--> statement-breakpoint
+CREATE INDEX `notification_list` ON `notification` (`user_id`,`at`,`id`);--> statement-breakpoint
 CREATE TABLE `outbox_mail` (
 	`id` text PRIMARY KEY NOT NULL,
 	`kind` text NOT NULL,

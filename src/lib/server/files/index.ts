@@ -18,3 +18,4 @@ export {
   unsafeCurrentDocuments,
   type CompanyDocument,
 } from './documents.ts';
+export { objectStore, useObjectStore } from './store.ts';

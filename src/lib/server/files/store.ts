@@ -5,11 +5,18 @@ import { config } from '../config/index.ts';
 export type { ObjectStore };
 
 let shared: ObjectStore | undefined;
+let given: ObjectStore | undefined;
 
 /** The store of this process, made from the configuration at first use. */
 export function objectStore(): ObjectStore {
+  if (given) return given;
   shared ??= createObjectStore(config().storage);
   return shared;
+}
+
+/** For tests and commands that bring their own; `undefined` goes back to the configured one. */
+export function useObjectStore(store: ObjectStore | undefined): void {
+  given = store;
 }
 
 /** Runs calls to the store; when it does not answer as it should, that is told as such. */

@@ -28,6 +28,7 @@ export const auditEvent = sqliteTable(
   (table) => [
     index('audit_subject').on(table.subjectType, table.subjectId),
     index('audit_company').on(table.companyId, table.at),
+    index('audit_seal_rows').on(table.seal, table.id),
     index('audit_unsealed')
       .on(table.id)
       .where(sql`${table.seal} is null`),
@@ -82,7 +83,10 @@ export const notification = sqliteTable(
     at: instant('at').notNull(),
     readAt: instant('read_at'),
   },
-  (table) => [index('notification_user').on(table.userId, table.readAt, table.at)],
+  (table) => [
+    index('notification_user').on(table.userId, table.readAt, table.at),
+    index('notification_list').on(table.userId, table.at, table.id),
+  ],
 );
 
 export const job = sqliteTable(
