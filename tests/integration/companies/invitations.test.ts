@@ -7,6 +7,7 @@ import {
   acceptInvitation,
   companyPage,
   invitationByToken,
+  invitationsTo,
   invite,
   removeMember,
   withdrawInvitation,
@@ -139,6 +140,21 @@ test('who was removed can be invited back and has the new roles only', async () 
   await acceptInvitation(t.db, person, token);
   expect((await actorFor(t.db, person.userId)).memberships).toMatchObject([{ roles: ['estimator'] }]);
   expect(await t.db.select().from(membership).where(eq(membership.userId, person.userId))).toHaveLength(1);
+});
+
+test('the invited person finds the invitation without the mail; its id opens nothing for others', async () => {
+  await invite(t.db, owner, { companyId, ...ask });
+  const person = await aPerson(t.db, { email });
+  const other = await aPerson(t.db);
+  const [own] = await invitationsTo(t.db, person);
+  if (!own) throw new Error('not found');
+  expect(own.companyName).toBe('Tallow Bend Shop');
+  expect(await invitationsTo(t.db, other)).toEqual([]);
+  expect(await refusalCode(invitationByToken(t.db, own.id, other))).toBe('not-found');
+  expect(await refusalCode(invitationByToken(t.db, own.id))).toBe('not-found');
+  expect(await refusalCode(acceptInvitation(t.db, other, own.id))).toBe('not-found');
+  expect((await invitationByToken(t.db, own.id, person)).state).toBe('open');
+  expect(await acceptInvitation(t.db, person, own.id)).toBe(companyId);
 });
 
 test('an unknown token tells nothing', async () => {

@@ -25,6 +25,7 @@ export {
   verifyAddress,
   type SignInContext,
 } from './flows.ts';
+export { AdminError, enrolSecondFactor, setAdmin } from './admins.ts';
 export { auth, provideAuth, signInContext } from './instance.ts';
 export { passwordLength } from './password.ts';
 export { requireFreshSession, resolveVisitor, type SessionState } from './session.ts';

@@ -167,14 +167,19 @@ export interface InvitationView {
   expiresAt: number;
 }
 
-/** What the bearer of the link may see, signed in or not. */
-export async function invitationByToken(reader: Reader, token: string): Promise<InvitationView> {
+/** What the bearer of the link may see, signed in or not; by id only the invited person. */
+export async function invitationByToken(
+  reader: Reader,
+  token: string,
+  actor: Actor | null = null,
+): Promise<InvitationView> {
+  const own = actor?.emailVerified ? await ownInvitation(reader, actor, token) : undefined;
   const [row] = await reader
     .select({ invitation, company, inviter: user.name })
     .from(invitation)
     .innerJoin(company, eq(company.id, invitation.companyId))
     .innerJoin(user, eq(user.id, invitation.invitedBy))
-    .where(eq(invitation.tokenHash, hashOf(token)));
+    .where(own ? eq(invitation.id, own.id) : eq(invitation.tokenHash, hashOf(token)));
   if (!row) throw new AppError('not-found', { detail: 'There is no such invitation.' });
   const expired = row.invitation.state === 'open' && row.invitation.expiresAt <= (await businessNow(reader));
   return {
@@ -189,9 +194,26 @@ export async function invitationByToken(reader: Reader, token: string): Promise<
   };
 }
 
+/** The actor's own invitations, found by the confirmed address: the mail is not needed to accept them. */
+export async function invitationsTo(reader: Reader, actor: Actor) {
+  if (!actor.emailVerified) return [];
+  const rows = await reader
+    .select({
+      id: invitation.id,
+      companyName: company.name,
+      roles: invitation.roles,
+      expiresAt: invitation.expiresAt,
+    })
+    .from(invitation)
+    .innerJoin(company, eq(company.id, invitation.companyId))
+    .where(and(eq(invitation.email, actor.email.toLowerCase()), eq(invitation.state, 'open')));
+  const now = await businessNow(reader);
+  return rows.filter((row) => row.expiresAt > now);
+}
+
 /**
- * Makes the actor a member by the token of the mail. The confirmed address must be the invited one, so
- * that a forwarded link is worth nothing. Returns the company.
+ * Makes the actor a member by the token of the mail, or by the id of an own invitation. The confirmed address must be the invited one, so
+ * that a forwarded link is worth nothing and an id tells nobody else anything. Returns the company.
  */
 export async function acceptInvitation(db: Database, actor: Actor, token: string): Promise<string> {
   requireVerifiedEmail(actor);
@@ -201,10 +223,11 @@ export async function acceptInvitation(db: Database, actor: Actor, token: string
     });
   }
   return transact(db, async (tx) => {
-    const [row] = await tx
+    const [byToken] = await tx
       .select()
       .from(invitation)
       .where(eq(invitation.tokenHash, hashOf(token)));
+    const row = byToken ?? (await ownInvitation(tx, actor, token));
     if (!row) throw new AppError('not-found', { detail: 'There is no such invitation.' });
     if (row.email !== actor.email.toLowerCase()) {
       throw new AppError('not-allowed', {
@@ -230,6 +253,14 @@ export async function acceptInvitation(db: Database, actor: Actor, token: string
     await joinCompany(tx, actor, row, now);
     return row.companyId;
   });
+}
+
+async function ownInvitation(reader: Reader, actor: Actor, id: string) {
+  const [row] = await reader
+    .select()
+    .from(invitation)
+    .where(and(eq(invitation.id, id), eq(invitation.email, actor.email.toLowerCase())));
+  return row;
 }
 
 async function joinCompany(
