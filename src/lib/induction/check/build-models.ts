@@ -2,7 +2,14 @@
 import { arrangements, type Arrangement } from '../tank/bank.ts';
 import type { AssumedMachine } from './assume.ts';
 import { assumeMachine } from './assume.ts';
-import { chebyshevPoints, coilModel, pointOf, type CoilModel, type CoilSource } from './coil-model.ts';
+import {
+  chebyshevPoints,
+  coilModel,
+  pointOf,
+  type CoilModel,
+  type CoilSource,
+  type ModelPoint,
+} from './coil-model.ts';
 import {
   circuitOf,
   isFitted,
@@ -82,27 +89,17 @@ export function buildModels(
   if (!fitted) return null;
   const found: Partial<Record<StateName, StateModel>> = {};
   const nominal: Partial<Record<StateName, ImpedanceAnswer>> = {};
+  let last = { frequency: guess.frequency, current: 500 };
   for (const state of states) {
     const magnetic = isMagnetic(geometry, state, process.targetTemperatureC, process.startTemperatureC);
-    const rough = roughPoint(assumed, fitted, magnetic, guess.frequency, (f, i) =>
-      ask(state, f, i, 'preview'),
-    );
+    const rough = roughPoint(assumed, fitted, magnetic, last, (f, i) => ask(state, f, i, 'preview'));
     if (!rough) return null;
+    last = { frequency: rough.frequency, current: rough.current };
     const span = spanOf(assumed, settings, rough.model, rough);
-    const counts = gridCounts(span, magnetic, options.setting);
-    const frequencies = chebyshevPoints(span.frequency[0], span.frequency[1], counts.frequency);
-    const currents =
-      counts.current > 1
-        ? chebyshevPoints(span.current[0], span.current[1], counts.current)
-        : [rough.current];
-    const answers = frequencies.map((f) => currents.map((i) => ask(state, f, i, options.setting)));
-    const flat = answers.flat();
-    if (flat.some((answer) => answer === null)) return null;
-    const model = coilModel(
-      frequencies,
-      currents,
-      answers.map((row) => row.map((answer) => pointOf(answer as ImpedanceAnswer))),
+    const model = gridModel(span, rough, { magnetic, state, setting: options.setting }, (f, i, setting) =>
+      ask(state, f, i, setting),
     );
+    if (!model) return null;
     const point = operatingPoint(circuitOf(assumed, fitted), model, assumed.limits, rough);
     if (!point) return null;
     const answer = ask(state, point.frequency, point.current, options.setting);
@@ -138,11 +135,10 @@ function roughPoint(
   assumed: AssumedMachine,
   fitted: RowSetting,
   magnetic: boolean,
-  start: number,
+  start: { frequency: number; current: number },
   ask: (frequency: number, current: number) => ImpedanceAnswer | null,
 ): Rough | null {
-  let frequency = start;
-  let current = 500;
+  let { frequency, current } = start;
   for (let i = 0; i < (magnetic ? 5 : 2); i++) {
     const answer = ask(frequency, current);
     if (!answer) return null;
@@ -178,14 +174,66 @@ function spanOf(
   };
 }
 
-function gridCounts(
-  span: { frequency: [number, number] },
-  magnetic: boolean,
-  setting: CheckOptions['setting'],
-): { frequency: number; current: number } {
+type AskAt = (frequency: number, current: number, setting: CheckOptions['setting']) => ImpedanceAnswer | null;
+
+/**
+ * Impedance over the span, solved with the setting of the check at the rough current. Where the permeability moves with
+ * current, what a change of current does is taken from preview solutions at one or two frequencies over the rows'
+ * currents: it hardly depends on frequency.
+ */
+function gridModel(
+  span: { frequency: [number, number]; current: [number, number] },
+  rough: Rough,
+  how: { magnetic: boolean; state: StateName; setting: CheckOptions['setting'] },
+  ask: AskAt,
+): CoilModel | null {
   const ratio = span.frequency[1] / span.frequency[0];
   const full = ratio < 1.3 ? 3 : ratio < 3 ? 4 : 5;
-  return { frequency: setting === 'preview' ? Math.min(3, full) : full, current: magnetic ? 3 : 1 };
+  const light = how.setting === 'preview';
+  const frequencies = chebyshevPoints(span.frequency[0], span.frequency[1], light ? 3 : full);
+  const exact = solveGrid(frequencies, [rough.current], (f, i) => ask(f, i, how.setting));
+  if (!exact || !how.magnetic) return exact;
+  const weak = light || how.state === 'hot';
+  const variation = solveGrid(
+    chebyshevPoints(span.frequency[0], span.frequency[1], weak ? 1 : 2),
+    chebyshevPoints(span.current[0], span.current[1], weak ? 2 : 3),
+    (f, i) => ask(f, i, 'preview'),
+  );
+  return variation ? withCurrent(exact, variation, rough.current) : null;
+}
+
+function solveGrid(
+  frequencies: readonly number[],
+  currents: readonly number[],
+  ask: (frequency: number, current: number) => ImpedanceAnswer | null,
+): CoilModel | null {
+  const points: ModelPoint[][] = [];
+  for (const f of frequencies) {
+    const row: ModelPoint[] = [];
+    for (const i of currents) {
+      const answer = ask(f, i);
+      if (!answer) return null;
+      row.push(pointOf(answer));
+    }
+    points.push(row);
+  }
+  return coilModel(frequencies, currents, points);
+}
+
+function withCurrent(exact: CoilModel, variation: CoilModel, current: number): CoilModel {
+  return {
+    currentDependent: true,
+    at(frequency, i) {
+      const base = exact.at(frequency, current);
+      const there = variation.at(frequency, i);
+      const here = variation.at(frequency, current);
+      return {
+        inductance: (base.inductance * there.inductance) / here.inductance,
+        coilResistance: (base.coilResistance * there.coilResistance) / here.coilResistance,
+        loadResistance: (base.loadResistance * there.loadResistance) / here.loadResistance,
+      };
+    },
+  };
 }
 
 function sourcesOf(
@@ -220,7 +268,6 @@ function sourcesOf(
     material: geometry.material,
     magnetic,
     gapBetweenTurns: gapBetweenTurns(geometry),
-    central: options.setting !== 'preview',
   });
 }
 

@@ -228,7 +228,6 @@ function bareSources(
     material: null,
     magnetic: false,
     gapBetweenTurns: gapBetweenTurns(geometry),
-    central: options.setting !== 'preview',
   });
 }
 

@@ -79,28 +79,41 @@ const times = (a: CoilShift, k: number): CoilShift => combine(a, a, (x) => x * k
 
 interface Variation {
   name: string;
+  /** Central differences where the step is not small against the gap; else one side, within 1 % of it. */
+  central: boolean;
+  copperOnly: boolean;
   unit: 'm';
   amount: number;
   change: (coil: Coil, part: Workpiece | null, sign: number) => { coil: Coil; part: Workpiece | null };
 }
 
+/**
+ * Tolerances that act on the copper alone (size and wall of the tube) are taken from the bare coil, those that act on
+ * the gap from the loaded one.
+ */
 function variations(coil: Coil, part: Workpiece | null, gapBetweenTurns: number): Variation[] {
   const t = shopTolerances;
   const list: Variation[] = [
     {
       name: 'coil opening',
+      central: true,
+      copperOnly: false,
       unit: 'm',
       amount: coil.diameterTolerance ?? t.diameter,
       change: (c, p, s) => ({ coil: { ...c, winding: widened(c.winding, s) }, part: p }),
     },
     {
       name: 'tube size',
+      central: false,
+      copperOnly: true,
       unit: 'm',
       amount: t.tube,
       change: (c, p, s) => ({ coil: { ...c, tube: grown(c.tube, s) }, part: p }),
     },
     {
       name: 'tube wall',
+      central: false,
+      copperOnly: true,
       unit: 'm',
       amount: t.wallShare * coil.tube.wall,
       change: (c, p, s) => ({ coil: { ...c, tube: { ...c.tube, wall: c.tube.wall + s } }, part: p }),
@@ -109,6 +122,8 @@ function variations(coil: Coil, part: Workpiece | null, gapBetweenTurns: number)
   if (stretched(coil.winding, 0)) {
     list.push({
       name: 'pitch',
+      central: false,
+      copperOnly: false,
       unit: 'm',
       amount: coil.pitchTolerance ?? t.pitch,
       change: (c, p, s) => ({ coil: { ...c, winding: stretched(c.winding, s) ?? c.winding }, part: p }),
@@ -117,6 +132,8 @@ function variations(coil: Coil, part: Workpiece | null, gapBetweenTurns: number)
   if (part) {
     list.push({
       name: 'part diameter',
+      central: false,
+      copperOnly: false,
       unit: 'm',
       amount: part.diameterTolerance ?? t.partDiameter,
       change: (c, p, s) => ({ coil: c, part: p ? { ...p, outsideDiameter: p.outsideDiameter + s } : p }),
@@ -138,37 +155,55 @@ export interface SensitivityInput {
   material: Material | null;
   magnetic: boolean;
   gapBetweenTurns: number;
-  /** Central differences; one-sided ones in the preview. */
-  central: boolean;
 }
+
+/** ln of the preview solution at a moved question less that at the base; null where it is refused. */
+type Difference = (moved: Question, base?: Question) => CoilShift | null;
 
 /** Every source of the coil's band in one state. */
 export function coilSources(solver: Solver, input: SensitivityInput): CoilSource[] {
   const sources: CoilSource[] = [modelSource(input.nominal)];
   const base: Question = { ...input.question, setting: 'preview' };
-  const nominal = solver.ask(base);
-  if (!nominal) return sources;
-  const centre = logs(pointOf(nominal));
-  /** Half the change between the plus and the minus side of a step. */
-  const slope = (plus: Question, minus: Question): CoilShift | null => {
-    const up = solver.ask(plus);
-    if (!input.central) return up ? combine(logs(pointOf(up)), centre, (a, b) => a - b) : null;
-    const down = solver.ask(minus);
-    if (up && down)
-      return times(
-        combine(logs(pointOf(up)), logs(pointOf(down)), (a, b) => a - b),
-        0.5,
-      );
-    return up ? combine(logs(pointOf(up)), centre, (a, b) => a - b) : null;
+  const known = new Map<Question, CoilShift | null>();
+  const logsOf = (question: Question): CoilShift | null => {
+    const before = known.get(question);
+    if (before !== undefined) return before;
+    const answer = solver.ask(question);
+    const value = answer ? logs(pointOf(answer)) : null;
+    known.set(question, value);
+    return value;
+  };
+  if (!logsOf(base)) return sources;
+  const bare: Question = base.part ? { ...base, part: null, state: 'cold', current: 1 } : base;
+  const difference: Difference = (moved, from = base) => {
+    const a = logsOf(moved);
+    const b = logsOf(from);
+    return a && b ? combine(a, b, (x, y) => x - y) : null;
   };
   for (const v of variations(base.coil, base.part, input.gapBetweenTurns)) {
-    const at = (sign: number): Question => ({ ...base, ...v.change(base.coil, base.part, sign * v.amount) });
-    const shift = slope(at(1), at(-1));
-    if (shift) sources.push({ name: v.name, variation: { value: v.amount, unit: v.unit }, shift });
+    const from = v.copperOnly ? bare : base;
+    const at = (sign: number): Question => ({ ...from, ...v.change(from.coil, from.part, sign * v.amount) });
+    let shift = difference(at(1), from);
+    if (shift && v.central) {
+      const down = difference(at(-1), from);
+      if (down)
+        shift = times(
+          combine(shift, down, (a, b) => a - b),
+          0.5,
+        );
+    }
+    if (shift)
+      sources.push({
+        name: v.name,
+        variation: { value: v.amount, unit: v.unit },
+        shift: v.copperOnly ? withoutLoad(shift) : shift,
+      });
   }
-  sources.push(...offsetSource(solver, base, centre), ...materialSources(base, input, slope));
+  sources.push(...offsetSource(base, difference), ...materialSources(base, bare, input, difference));
   return sources;
 }
+
+const withoutLoad = (shift: CoilShift): CoilShift => ({ ...shift, loadResistance: 0 });
 
 function modelSource(answer: ImpedanceAnswer): CoilSource {
   return {
@@ -183,47 +218,39 @@ function modelSource(answer: ImpedanceAnswer): CoilSource {
 }
 
 /** Second order about the middle: taken at the tolerance itself. */
-function offsetSource(solver: Solver, base: Question, centre: CoilShift): CoilSource[] {
+function offsetSource(base: Question, difference: Difference): CoilSource[] {
   if (!base.part) return [];
-  const moved = solver.ask({
-    ...base,
-    part: { ...base.part, axialOffset: base.part.axialOffset + shopTolerances.offset },
-  });
-  if (!moved) return [];
-  const shift = combine(logs(pointOf(moved)), centre, (a, b) => a - b);
-  return [{ name: 'axial place of the part', variation: { value: shopTolerances.offset, unit: 'm' }, shift }];
+  const part = { ...base.part, axialOffset: base.part.axialOffset + shopTolerances.offset };
+  const shift = difference({ ...base, part });
+  return shift
+    ? [{ name: 'axial place of the part', variation: { value: shopTolerances.offset, unit: 'm' }, shift }]
+    : [];
 }
 
 function materialSources(
   base: Question,
+  bare: Question,
   input: SensitivityInput,
-  slope: (plus: Question, minus: Question) => CoilShift | null,
+  difference: Difference,
 ): CoilSource[] {
   const sources: CoilSource[] = [];
   const copperC = base.coil.copperTemperatureC ?? 40;
-  const warmer = (k: number): Question => ({
-    ...base,
-    coil: { ...base.coil, copperTemperatureC: copperC + k * shopTolerances.copperK },
-  });
-  const copper = slope(warmer(1), warmer(-1));
+  const warm = shopTolerances.copperK;
+  const warmer = { ...bare, coil: { ...bare.coil, copperTemperatureC: copperC + warm } };
+  const found = difference(warmer, bare);
+  const copper = found && withoutLoad(found);
   if (copper)
-    sources.push({
-      name: 'copper temperature',
-      variation: { value: shopTolerances.copperK, unit: 'K' },
-      shift: copper,
-    });
+    sources.push({ name: 'copper temperature', variation: { value: warm, unit: 'K' }, shift: copper });
   if (!base.part || !input.material) return sources;
   const step = 0.03;
-  const perFrequency = slope(
-    { ...base, frequency: base.frequency * (1 + step) },
-    { ...base, frequency: base.frequency * (1 - step) },
-  );
+  const perFrequency = difference({ ...base, frequency: base.frequency * (1 + step) });
   if (perFrequency && copper) {
     // Copper follows 0.00393 per kelvin of its 20 °C value (IEC 60028).
-    const copperStep = (0.00393 * shopTolerances.copperK) / (1 + 0.00393 * (copperC - 20));
+    const copperStep = (0.00393 * warm) / (1 + 0.00393 * (copperC - 20));
     const one: CoilShift = { inductance: 0, coilResistance: 1, loadResistance: 1 };
+    const perLn = times(perFrequency, 1 / Math.log(1 + step));
     const perPart = combine(
-      combine(one, times(perFrequency, 1 / step), (a, b) => a - b),
+      combine(one, perLn, (a, b) => a - b),
       times(copper, 1 / copperStep),
       (a, b) => a - b,
     );
@@ -235,16 +262,13 @@ function materialSources(
     });
   }
   if (input.magnetic) {
-    const perCurrent = slope(
-      { ...base, current: base.current * (1 + step) },
-      { ...base, current: base.current * (1 - step) },
-    );
+    const perCurrent = difference({ ...base, current: base.current * (1 + step) });
     const scatter = input.material.records.magnetisation.uncertainty;
     if (perCurrent) {
       sources.push({
         name: 'magnetisation of the part',
         variation: { value: scatter, unit: '1' },
-        shift: times(perCurrent, -scatter / step),
+        shift: times(perCurrent, -scatter / Math.log(1 + step)),
       });
     }
   }
