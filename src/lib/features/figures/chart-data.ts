@@ -27,6 +27,17 @@ export function plain(value: number): string {
   return value.toFixed(Math.min(6, digits)).replace(/^-/, '−');
 }
 
+/** A round number of an axis, without the zeros that would feign precision. */
+export function tickText(value: number): string {
+  return String(Number(value.toPrecision(6))).replace(/^-/, '−');
+}
+
+/** A power with the unit in which it reads well: "450 W", "2.40 kW". */
+export function powerText(watts: number): string {
+  const unit = axisUnit(watts, 'W');
+  return `${plain(watts * unit.factor)} ${unit.symbol}`;
+}
+
 /** Text of a CSV file; cells that a spreadsheet would run as a formula are quoted out of harm. */
 export function csvOf(
   head: readonly string[],
