@@ -5,6 +5,7 @@
 import { existsSync, readdirSync, rmSync } from 'node:fs';
 import path from 'node:path';
 import { fileURLToPath } from 'node:url';
+import { stripVTControlCharacters } from 'node:util';
 import { rolldown } from 'rolldown';
 
 const ROOT = path.resolve(path.dirname(fileURLToPath(import.meta.url)), '../..');
@@ -25,24 +26,31 @@ function entries(): Record<string, string> {
   };
 }
 
-rmSync(OUT, { recursive: true, force: true });
-const bundle = await rolldown({
-  input: entries(),
-  platform: 'node',
-  // Bare names are packages, everything else is ours.
-  external: (id) => !id.startsWith('.') && !path.isAbsolute(id),
-  tsconfig: false,
-  onLog: (level, log, report) => {
-    if (level === 'warn' && log.code === 'UNRESOLVED_IMPORT') throw new Error(log.message);
-    report(level, log);
-  },
-});
-await bundle.write({
-  dir: OUT,
-  format: 'esm',
-  entryFileNames: '[name].js',
-  chunkFileNames: 'chunks/[name]-[hash].js',
-  sourcemap: true,
-});
-await bundle.close();
-process.stdout.write(`Bundled ${Object.keys(entries()).join(', ')}.\n`);
+async function bundle(): Promise<void> {
+  rmSync(OUT, { recursive: true, force: true });
+  const made = await rolldown({
+    input: entries(),
+    platform: 'node',
+    // Bare names are packages, everything else is ours.
+    external: (id) => !id.startsWith('.') && !path.isAbsolute(id),
+    tsconfig: false,
+  });
+  await made.write({
+    dir: OUT,
+    format: 'esm',
+    entryFileNames: '[name].js',
+    chunkFileNames: 'chunks/[name]-[hash].js',
+    sourcemap: true,
+  });
+  await made.close();
+  process.stdout.write(`Bundled ${Object.keys(entries()).join(', ')}.\n`);
+}
+
+try {
+  await bundle();
+} catch (error) {
+  process.stderr.write(
+    `${error instanceof Error ? stripVTControlCharacters(error.message) : String(error)}\n`,
+  );
+  process.exitCode = 1;
+}

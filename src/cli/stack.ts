@@ -155,10 +155,10 @@ async function bringUp(
   };
 }
 
-function announce(stack: Stack, mode: string): void {
+function announce(stack: Stack, stays: boolean): void {
   const lines = [`Coilyard    ${stack.origin}`, `Mails       ${stack.mail.url}`];
   if (stack.signIns.length > 0) lines.push('', 'Sign in as:', signInTable(stack.signIns));
-  if (mode === 'demo') lines.push('', 'Stop with Ctrl+C. Start with --fresh to begin anew.');
+  if (stays) lines.push('', 'Stop with Ctrl+C. Start with --fresh to begin anew.');
   process.stdout.write(`${lines.join('\n')}\n`);
 }
 
@@ -203,7 +203,7 @@ async function main(): Promise<number> {
     say: (line) => process.stdout.write(`${line}\n`),
   });
   try {
-    announce(stack, values.mode);
+    announce(stack, values.mode === 'demo' && !values.check);
     if (values['ready-file'] !== undefined) writeReadyFile(values['ready-file'], stack);
     if (values.check) return await check(stack);
     const failed = new Promise<string>((resolve) => {
@@ -222,12 +222,11 @@ async function main(): Promise<number> {
 }
 
 async function check(stack: Stack): Promise<number> {
-  const [first] = stack.signIns;
-  if (first === undefined) throw new Error('The seed wrote no sign-ins.');
+  if (stack.signIns.length === 0) throw new Error('The seed wrote no sign-ins.');
   for (const signIn of stack.signIns.filter((one) => one.note?.includes('two-factor') !== true)) {
     await trySignIn(stack.origin, signIn);
   }
-  const mails = await fetch(`${stack.mail.url}/`);
+  const mails = await fetch(`${stack.mail.url}/`, { headers: { accept: 'text/html' } });
   if (!mails.ok || !(await mails.text()).includes('<html')) throw new Error('The mail page does not answer.');
   process.stdout.write('Check passed: started, signed in, mail page answers.\n');
   return 0;

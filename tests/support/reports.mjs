@@ -1,6 +1,7 @@
 /** Reads the runners' JSON reports into counted results. Node built-ins only. */
 import { existsSync, readFileSync } from 'node:fs';
 import path from 'node:path';
+import { stripVTControlCharacters } from 'node:util';
 
 /**
  * @typedef {{ name: string, detail: string }} Failure
@@ -25,7 +26,7 @@ function parse(file) {
 }
 
 /** @param {string} text @param {number} lines */
-const head = (text, lines) => text.split('\n').slice(0, lines).join('\n');
+const head = (text, lines) => stripVTControlCharacters(text).split('\n').slice(0, lines).join('\n');
 
 /**
  * Undefined when there is no readable report. A file in which nothing ran and a suite in which nothing passed
