@@ -19,6 +19,7 @@ export {
   shipOrder,
   type ShipInput,
 } from './delivery.ts';
+export { finishIfDone, resumeAfterFunding } from './close-order.ts';
 export { moveMoney, moveWork, openWhatCanStart, setAttention, windowEnd } from './milestones.ts';
 export {
   companyOf,

@@ -1,4 +1,5 @@
 import type { JobDefinition } from '../jobs/index.ts';
+import { operationJob, paymentEventJob } from '../money/index.ts';
 import { announceRequest } from './announce-request.ts';
 
 /** The queue hands each job only a payload that its own schema has parsed, so the list may forget the types. */
@@ -7,4 +8,8 @@ function registered<Payload>(definition: JobDefinition<Payload>): JobDefinition<
 }
 
 /** Every kind of background job. A domain adds its definition here; the handler loads when first run. */
-export const jobDefinitions: readonly JobDefinition<never>[] = [registered(announceRequest)];
+export const jobDefinitions: readonly JobDefinition<never>[] = [
+  registered(announceRequest),
+  registered(operationJob),
+  registered(paymentEventJob),
+];

@@ -1,5 +1,6 @@
 import { lapseBids } from '../bids/index.ts';
 import type { Database } from '../db/index.ts';
+import { recoverMoney } from '../money/index.ts';
 import { runRequestDeadlines } from './request-deadlines.ts';
 
 export interface RecurringTask {
@@ -18,4 +19,5 @@ export const recurringTasks: readonly RecurringTask[] = [
       await lapseBids(db);
     },
   },
+  { name: 'money-recovery', everyMs: 5_000, run: recoverMoney },
 ];
