@@ -23,6 +23,8 @@ export interface OutgoingMail {
 
 export interface Mailer {
   send: (mail: OutgoingMail) => Promise<void>;
+  /** Connects, greets and signs in without sending; throws when that fails. */
+  check: () => Promise<void>;
   close: () => void;
 }
 
@@ -92,6 +94,9 @@ export function createMailer(config: MailerConfig): Mailer {
       }
       if (sentSchema.parse(sent).accepted.length !== 1)
         throw new MailError('The mail server refused the recipient.', true);
+    },
+    check: async () => {
+      await transport.verify();
     },
     close: () => transport.close(),
   };

@@ -84,6 +84,7 @@ export async function notify(
 
 /** What sends: the mailer adapter, or a test's own. Throws when the mail was not taken. */
 export type SendMail = (mail: {
+  /** The outbox id, as the Message-ID: a mail sent twice is known by it. */
   messageId: string;
   to: string;
   subject: string;
@@ -157,7 +158,7 @@ export async function sendDueMails(
         ? openContent(row.body, config().mailKey)
         : mailContent.parse(JSON.parse(row.body));
       await send({
-        messageId: `<${row.id}@coilyard>`,
+        messageId: row.id,
         to: row.toEmail,
         subject: row.subject,
         text: renderText(content, origin),
@@ -179,7 +180,10 @@ export async function sendDueMails(
       failed += 1;
       const message = error instanceof Error ? error.message : String(error);
       const dead = row.attempts >= maxAttempts;
-      log().warn({ mail: row.id, kind: row.kind, attempt: row.attempts, dead, error: message }, 'mail not sent');
+      log().warn(
+        { mail: row.id, kind: row.kind, attempt: row.attempts, dead, error: message },
+        'mail not sent',
+      );
       await db
         .update(outboxMail)
         .set({

@@ -1,5 +1,8 @@
+import { probeServices } from '../admin/index.ts';
+import { sealAudit } from '../audit/seals.ts';
 import { lapseBids } from '../bids/index.ts';
 import type { Database } from '../db/index.ts';
+import { clearUnfinishedUploads } from '../files/index.ts';
 import { recoverMoney } from '../money/index.ts';
 import { runRequestDeadlines } from './request-deadlines.ts';
 
@@ -7,6 +10,8 @@ export interface RecurringTask {
   name: string;
   everyMs: number;
   run: (db: Database, signal: AbortSignal) => Promise<void>;
+  /** Looks at the world around; no state of the application waits for it, so a drain leaves it out. */
+  workerOnly?: boolean;
 }
 
 /** What the worker does again and again: deadlines, recovery of outside calls, probes, sealing the audit trail. */
@@ -20,4 +25,19 @@ export const recurringTasks: readonly RecurringTask[] = [
     },
   },
   { name: 'money-recovery', everyMs: 5_000, run: recoverMoney },
+  {
+    name: 'unfinished-uploads',
+    everyMs: 60_000,
+    run: async (db, signal) => {
+      await clearUnfinishedUploads(db, signal);
+    },
+  },
+  {
+    name: 'audit-seals',
+    everyMs: 60_000,
+    run: async (db, signal) => {
+      await sealAudit(db, signal);
+    },
+  },
+  { name: 'service-probes', everyMs: 30_000, run: (db) => probeServices(db), workerOnly: true },
 ];

@@ -63,7 +63,7 @@ export async function drainJobs(
   const signal = new AbortController().signal;
   for (let round = 0; round < (options.limit ?? 500); round += 1) {
     let did = 0;
-    for (const task of recurringTasks) await task.run(db, signal);
+    for (const task of recurringTasks) if (!task.workerOnly) await task.run(db, signal);
     for (;;) {
       const row = await claimJob(db, 'drain', jobDefinitions);
       if (!row) break;
