@@ -17,8 +17,9 @@ import {
   type Lettering,
 } from './measures.ts';
 import type { DrawingModel, DrawingView } from './model.ts';
-import { channelSide, hairpinPlan, loopOpening, loopPlan } from './plan-view.ts';
-import { sectionView, type SectionInput } from './section-view.ts';
+import { channelSide, hairpinPlan, loopOpening, loopPlan, type PlanInput } from './plan-view.ts';
+import type { SectionInput } from './section-geometry.ts';
+import { sectionView } from './section-view.ts';
 
 export interface DrawingOptions {
   /** Unit of the lettering; geometry stays in millimetres. */
@@ -106,6 +107,24 @@ function describe(
   return `Drawing to scale: ${shape}${turns} of ${tube.kind} tube ${lengthText(tube.width, lettering)}${around}.`;
 }
 
+function fixtureParts({ fixture }: DrawingInput): SectionInput['fixtureParts'] {
+  return (fixture?.metalParts ?? []).flatMap((metal) => {
+    const size = millimetres(metal.size);
+    const placed = Number.isFinite(metal.r) && Number.isFinite(metal.z);
+    return size && placed ? [{ name: metal.name, r: metal.r * 1000, z: metal.z * 1000, size }] : [];
+  });
+}
+
+/** Views of windings that do not go round; none for those that do. */
+function planViews(winding: Winding, plan: PlanInput): DrawingView[] {
+  const views: (DrawingView | null)[] = [];
+  if (winding.shape === 'racetrack' || winding.shape === 'rectangular-helix')
+    views.push(loopPlan(winding, plan));
+  if (winding.shape === 'channel') views.push(loopPlan(winding, plan), channelSide(winding, plan));
+  if (winding.shape === 'hairpin') views.push(hairpinPlan(winding, plan));
+  return views.filter((view) => view !== null);
+}
+
 /**
  * Draws coil, part and leads of a requirement to scale: section through the axis and view along it, or a
  * plan for windings that do not go round. Lengths go in as metres and come out as millimetres. Values that
@@ -144,12 +163,7 @@ export function coilDrawing(input: DrawingInput, options: DrawingOptions = {}): 
       centreTap: coil.centreTap,
       faceGap: flat ? Math.max(0, millimetres(given.faceGap) ?? 0) : null,
       inside,
-      fixtureParts: (input.fixture?.metalParts ?? []).flatMap((metal) => {
-        const size = millimetres(metal.size);
-        return size && Number.isFinite(metal.r) && Number.isFinite(metal.z)
-          ? [{ name: metal.name, r: metal.r * 1000, z: metal.z * 1000, size }]
-          : [];
-      }),
+      fixtureParts: fixtureParts(input),
       title: round ? 'Section through the axis' : 'Section across the width',
       textHeight,
       lettering,
@@ -174,16 +188,7 @@ export function coilDrawing(input: DrawingInput, options: DrawingOptions = {}): 
       );
     }
   }
-  const plan = { tube, part, leads, textHeight, lettering };
-  if (given.shape === 'racetrack' || given.shape === 'rectangular-helix' || given.shape === 'channel') {
-    const view = loopPlan(given, plan);
-    if (view) views.push(view);
-    const side = given.shape === 'channel' ? channelSide(given, plan) : null;
-    if (side) views.push(side);
-  } else if (given.shape === 'hairpin') {
-    const view = hairpinPlan(given, plan);
-    if (view) views.push(view);
-  }
+  views.push(...planViews(given, { tube, part, leads, textHeight, lettering }));
   if (views.length === 0) notes.push(missing(given.shape));
   if (!leads.given && views.length > 0)
     notes.push('The leads are not given yet; short stubs are drawn dashed.');

@@ -189,7 +189,7 @@ export function drawnWinding(
       };
     }
     case 'stepped': {
-      const steps = winding.insideDiameters
+      const steps = (winding.insideDiameters ?? [])
         .map(millimetres)
         .filter((step) => step !== null)
         .slice(0, mostTurns);
