@@ -680,6 +680,8 @@ CREATE TABLE `coil_order` (
 	`acknowledged_at` integer,
 	`acknowledged_by` text,
 	`clock_stopped_at` integer,
+	`clock_resumed_at` integer,
+	`next_check_at` integer DEFAULT 0 NOT NULL,
 	`closed_at` integer,
 	`end_reason` text DEFAULT '' NOT NULL,
 	`version` integer DEFAULT 1 NOT NULL,
@@ -692,6 +694,7 @@ CREATE TABLE `coil_order` (
 CREATE UNIQUE INDEX `coil_order_bid_id_unique` ON `coil_order` (`bid_id`);--> statement-breakpoint
 CREATE UNIQUE INDEX `coil_order_live_per_request` ON `coil_order` (`request_id`) WHERE state in ('to-acknowledge', 'running', 'suspended');--> statement-breakpoint
 CREATE UNIQUE INDEX `coil_order_number` ON `coil_order` (`buyer_company_id`,`number`);--> statement-breakpoint
+CREATE INDEX `coil_order_check` ON `coil_order` (`next_check_at`);--> statement-breakpoint
 CREATE INDEX `coil_order_buyer` ON `coil_order` (`buyer_company_id`,`state`,`awarded_at`);--> statement-breakpoint
 CREATE INDEX `coil_order_fabricator` ON `coil_order` (`fabricator_company_id`,`state`,`awarded_at`);--> statement-breakpoint
 CREATE TABLE `deadline_notice` (

@@ -52,6 +52,10 @@ export const coilOrder = sqliteTable(
     acknowledgedBy: userRef('acknowledged_by'),
     /** Since when the clocks stand still because of a dispute. */
     clockStoppedAt: instant('clock_stopped_at'),
+    /** When they last began to run again: waits that had begun before count from here. */
+    clockResumedAt: instant('clock_resumed_at'),
+    /** Business time at which the deadlines have to be looked at again; 0 after every change. */
+    nextCheckAt: instant('next_check_at').notNull().default(0),
     closedAt: instant('closed_at'),
     endReason: text('end_reason').notNull().default(''),
     version: version(),
@@ -61,6 +65,7 @@ export const coilOrder = sqliteTable(
       .on(table.requestId)
       .where(sql`state in ('to-acknowledge', 'running', 'suspended')`),
     uniqueIndex('coil_order_number').on(table.buyerCompanyId, table.number),
+    index('coil_order_check').on(table.nextCheckAt),
     index('coil_order_buyer').on(table.buyerCompanyId, table.state, table.awardedAt),
     index('coil_order_fabricator').on(table.fabricatorCompanyId, table.state, table.awardedAt),
   ],
