@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { isCountryCode } from '../../domain/countries.ts';
 import {
   coilShapeCapabilities,
   keysOf,
@@ -33,11 +34,7 @@ const text = (what: string, max: number, min = 1) =>
     .max(max, `Keep ${what} below ${max} characters.`);
 const optionalText = (max: number) => z.string().trim().max(max, `At most ${max} characters.`).default('');
 
-const country = z
-  .string()
-  .trim()
-  .toUpperCase()
-  .regex(/^[A-Z]{2}$/, 'Choose the country.');
+const country = z.string().trim().toUpperCase().refine(isCountryCode, 'Choose the country.');
 
 function length(unitSet: UnitSet, low: number, high: number) {
   return z
