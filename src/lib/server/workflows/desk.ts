@@ -1,4 +1,4 @@
-import { desc, eq } from 'drizzle-orm';
+import { and, count, desc, eq, isNull } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
 import type { Reader } from '../db/index.ts';
 import { notification } from '../db/schema/platform.ts';
@@ -64,4 +64,13 @@ export async function deskOf(
     others: items.filter((item) => item.waitsFor === 'others').slice(0, mostItems),
     recent: recent.map(({ readAt, ...row }) => ({ ...row, unread: readAt === null })),
   };
+}
+
+/** How many notifications the actor has not read yet; for the mark in the head of every page. */
+export async function unreadNotifications(reader: Reader, actor: Actor): Promise<number> {
+  const [row] = await reader
+    .select({ n: count() })
+    .from(notification)
+    .where(and(eq(notification.userId, actor.userId), isNull(notification.readAt)));
+  return row?.n ?? 0;
 }
