@@ -4,6 +4,8 @@ import { approvalMachine } from '../../domain/bid.ts';
 import { AppError } from '../../domain/errors.ts';
 import { formatMoney, type Currency } from '../../domain/money.ts';
 import { requestMachine } from '../../domain/request-states.ts';
+import { resolveAcceptance } from '../../induction/check/resolve-acceptance.ts';
+import type { CheckResult, Requirement } from '../../induction/check/types.ts';
 import { requireAccess, requireVerifiedEmail } from '../access/index.ts';
 import { businessNow } from '../adapters/clock.ts';
 import { newId } from '../adapters/ids.ts';
@@ -101,14 +103,18 @@ async function askApproval(tx: Tx, actor: Actor, bidRow: BidRow, requestRow: Req
 async function orderSpecificationBody(tx: Tx, bidRow: BidRow, requestRow: RequestRow): Promise<string> {
   const [spec] = await tx.select().from(specification).where(eq(specification.id, bidRow.specificationId));
   if (!spec) throw new AppError('not-found');
-  const frozen = JSON.parse(spec.body) as { requirement: unknown; check?: unknown };
+  const frozen = JSON.parse(spec.body) as { requirement: Requirement; check?: CheckResult | null };
   const exceptions = await exceptionsOf(tx, [bidRow.id]);
   const terms = requestRow.commercial;
   return JSON.stringify({
     kind: 'order-specification',
     request: { id: requestRow.id, number: requestRow.number, title: requestRow.title },
     specification: { number: spec.number, hash: spec.hash },
-    requirement: frozen.requirement,
+    // The limits that as-built records are judged by stand in the lines themselves.
+    requirement: {
+      ...frozen.requirement,
+      acceptance: resolveAcceptance(frozen.requirement.acceptance, frozen.check?.proposedAcceptance ?? []),
+    },
     check: frozen.check ?? null,
     acceptedExceptions: exceptions
       .filter((row) => row.state === 'accepted')
