@@ -61,7 +61,7 @@ function expandOne(service: PaymentService, target: unknown, path: string[], ful
       throw invalidParam(undefined, `This property cannot be expanded (${full}).`, 'expand');
     }
     target[field] = structuredClone(found);
-  } else if (value === undefined) {
+  } else if (value === undefined || typeof value === 'number' || typeof value === 'boolean') {
     throw invalidParam(undefined, `This property cannot be expanded (${full}).`, 'expand');
   }
   if (rest.length > 0) expandOne(service, target[field], rest, full);

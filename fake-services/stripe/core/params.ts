@@ -7,10 +7,12 @@ import { ApiError, invalidParam } from './errors.ts';
 
 /** v1 sends everything as text. */
 export const int = () =>
-  z
-    .union([z.number(), z.string().regex(/^-?\d+$/)])
-    .transform(Number)
-    .refine(Number.isSafeInteger, { params: { code: 'parameter_invalid_integer' } });
+  z.unknown().transform((value, context): number => {
+    const parsed =
+      typeof value === 'number' || (typeof value === 'string' && /^-?\d+$/.test(value)) ? Number(value) : NaN;
+    if (!Number.isSafeInteger(parsed)) context.addIssue({ code: 'custom', message: 'not an integer' });
+    return parsed;
+  });
 export const bool = () =>
   z.union([z.boolean(), z.enum(['true', 'false'])]).transform((value) => value === true || value === 'true');
 /** A text that may not be empty; the service reads an empty string as "unset". */
