@@ -2,6 +2,7 @@ import { and, asc, desc, eq, inArray } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
 import { AppError } from '../../domain/errors.ts';
 import { can, requireAccess } from '../access/index.ts';
+import { businessNow } from '../adapters/clock.ts';
 import type { Database, Reader } from '../db/index.ts';
 import { user } from '../db/schema/auth.ts';
 import { company } from '../db/schema/companies.ts';
@@ -69,6 +70,7 @@ export async function companyVerification(db: Database, actor: Actor, companyId:
     .from(company)
     .where(eq(company.id, companyId));
   if (!row || row.kind !== 'fabricator') throw new AppError('not-found');
+  const now = await businessNow(db);
   const [profile] = await db
     .select()
     .from(fabricatorProfile)
@@ -76,7 +78,8 @@ export async function companyVerification(db: Database, actor: Actor, companyId:
   const history = await historyOf(db, companyId);
   const open = history.find((item) => item.state === 'asked');
   return {
-    company: row,
+    // A date that has passed verifies nothing any more.
+    company: { ...row, verifiedUntil: (row.verifiedUntil ?? 0) > now ? row.verifiedUntil : null },
     profile: profile ?? null,
     history,
     openDocuments: open ? await documentsOf(db, open.id) : [],
