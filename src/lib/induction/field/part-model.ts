@@ -1,5 +1,5 @@
 import { InductionInputError } from '../input-error.ts';
-import { skinDepth } from '../constants/physical.ts';
+import { MU0, skinDepth } from '../constants/physical.ts';
 import { describingPermeability } from '../materials/magnetisation.ts';
 import type { Material } from '../materials/types.ts';
 import type { CoilBlock, FieldSolution } from './coil-block.ts';
@@ -48,7 +48,13 @@ export function estimatedPeakField(g: FieldGeometry, current: number): number {
   return (Math.SQRT2 * current * g.coil.rings.length) / length;
 }
 
-function depthAt(material: Material, temperatureC: number, frequency: number, peakField: number): number {
+/** Skin depth of a material at T °C and a peak field, with the first-harmonic permeability, m. */
+export function depthAt(
+  material: Material,
+  temperatureC: number,
+  frequency: number,
+  peakField: number,
+): number {
   const law = material.magnetisation;
   const mu = law === null ? 1 : describingPermeability(law, temperatureC, peakField);
   return skinDepth(material.resistivity(temperatureC), frequency, mu);
@@ -132,24 +138,18 @@ function layerTemperatures(
   }
 }
 
-/** What sets the coil current: it matters for saturating parts, whose impedance depends on it. */
-export type Drive =
-  | { kind: 'current'; current: number }
-  /** Power at the coil's terminals, W. */
-  | { kind: 'power'; power: number }
-  /** Voltage at the coil's terminals, V rms. */
-  | { kind: 'voltage'; voltage: number };
-
-export function currentFor(drive: Drive, resistance: number, reactance: number): number {
-  switch (drive.kind) {
-    case 'current':
-      return drive.current;
-    case 'power':
-      return Math.sqrt(Math.max(0, drive.power) / Math.max(resistance, 1e-12));
-    case 'voltage':
-      return drive.voltage / Math.max(Math.hypot(resistance, reactance), 1e-12);
-  }
+/** Impedance of the rings in series, Ω: coil's own and parts' share of the resistance, and reactance. */
+export interface RingImpedance {
+  own: number;
+  load: number;
+  reactance: number;
 }
+
+/**
+ * Current in the rings, A rms, for an impedance: what a drive makes of it. Asked in every round of the
+ * permeability loop, so that a saturating part and its drive agree.
+ */
+export type RingCurrent = (impedance: RingImpedance) => number;
 
 /** Fields with parts in a thermal state. */
 export interface PartsSolution {
@@ -176,12 +176,11 @@ const MOST_ROUNDS = 25;
 export function solveParts(
   block: CoilBlock,
   parts: PartModel[],
-  drive: Drive,
+  ringCurrent: RingCurrent,
   start: Float64Array[] | null = null,
 ): PartsSolution {
   const g = block.geometry;
-  const bare = solvedBareImpedance(block);
-  let current = currentFor(drive, bare.resistance, bare.reactance);
+  let current = ringCurrent(bareImpedance(block));
   const resistivity = parts.map((p) => p.temperature.map((t) => p.material.resistivity(t)));
   const peak = estimatedPeakField(g, current);
   const permeability = parts.map((p, q) => {
@@ -207,7 +206,7 @@ export function solveParts(
       block,
       loads.map((l) => l.z),
     );
-    current = currentFor(drive, field.resistance, field.reactance);
+    current = ringCurrent(impedanceOf(field));
     const change =
       last === null
         ? Number.POSITIVE_INFINITY
@@ -236,18 +235,23 @@ export function solveParts(
   }
 }
 
-function solvedBareImpedance(block: CoilBlock): { resistance: number; reactance: number } {
-  // The eliminated system's own solution without parts: good enough to start a power or voltage drive.
+/** The rings without parts: where a power or voltage drive starts from. */
+function bareImpedance(block: CoilBlock): RingImpedance {
   const nt = block.geometry.turnColumns;
-  const omegaMu = 2 * Math.PI * block.frequency * 4e-7 * Math.PI;
-  let re = 0;
-  let im = 0;
+  const omegaMu = 2 * Math.PI * block.frequency * MU0;
+  let own = 0;
+  let reactance = 0;
   for (const [t, turn] of block.geometry.turns.entries()) {
     const times = turn.mirror >= 0 && turn.mirror !== turn.turn ? 2 : 1;
-    re += times * (block.bare.re[nt + t] as number) * omegaMu;
-    im += times * (block.bare.im[nt + t] as number) * omegaMu;
+    own += times * (block.bare.re[nt + t] as number) * omegaMu;
+    reactance += times * (block.bare.im[nt + t] as number) * omegaMu;
   }
-  return { resistance: re, reactance: im };
+  return { own, load: 0, reactance };
+}
+
+export function impedanceOf(field: FieldSolution): RingImpedance {
+  const sum = (list: number[]) => list.reduce((total, x) => total + x, 0);
+  return { own: sum(field.turnPower), load: sum(field.partPower), reactance: field.reactance };
 }
 
 /** Whether the part's permeability depends on the field in this state. */

@@ -81,7 +81,8 @@ export function impedanceAt(prepared: PreparedCoil, state: ImpedanceState): Impe
       state.current,
       part.heatedLength,
     );
-    const solved = solveParts(block, [model], { kind: 'current', current: state.current });
+    const scale = prepared.rings.turns / prepared.rings.rings.length;
+    const solved = solveParts(block, [model], () => state.current * scale);
     field = solved.field;
     if (isSaturating(model)) {
       modelError = [0.05, 0.05];
@@ -169,14 +170,18 @@ function answerOf(
   };
 }
 
-let lastPrepared: { key: string; prepared: PreparedCoil } | null = null;
+const recent = new Map<string, PreparedCoil>();
+const RECENT = 3;
 
-/** Reuses the last geometry: ladders and cold/hot pairs ask for the same one many times. */
+/** Reuses the last few geometries: ladders, cold/hot and bare/loaded pairs ask for the same many times. */
 function prepareOnce(query: ImpedanceQuery): PreparedCoil {
   const key = JSON.stringify([query.coil, query.part, query.setting]);
-  if (lastPrepared !== null && lastPrepared.key === key) return lastPrepared.prepared;
+  const known = recent.get(key);
+  if (known !== undefined) return known;
   const prepared = prepareCoil(query.coil, query.part, query.setting);
-  lastPrepared = { key, prepared };
+  const oldest = recent.keys().next();
+  if (recent.size >= RECENT && !oldest.done) recent.delete(oldest.value);
+  recent.set(key, prepared);
   return prepared;
 }
 
@@ -188,7 +193,7 @@ function prepareOnce(query: ImpedanceQuery): PreparedCoil {
  * finite elements; steel by a first-harmonic permeability at the given current. Figures for 1 A rms, Ω
  * and H; `turnVoltage` in V per A.
  *
- * Range: 1 Hz – 100 MHz, 0.5 – 200 turns, gaps above 3 % of the tube. The last geometry is kept, so that
+ * Range: 1 Hz – 100 MHz, 0.5 – 200 turns, gaps above 3 % of the tube. The last few geometries are kept, so that
  * asking for further frequencies or states of the same coil and part costs about half.
  *
  * @throws InductionInputError for input that cannot be computed, with a plain message and the field
