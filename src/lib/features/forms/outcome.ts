@@ -29,3 +29,16 @@ export function doneOf(form: unknown): { form: string; words: string } | null {
   if (form === null || typeof form !== 'object' || !('done' in form) || !('words' in form)) return null;
   return { form: String(form.done), words: String(form.words) };
 }
+
+/** After a conflict: the newer state that somebody else saved, by field; null for any other failure. */
+export function newerOf(failure: Failure | null): Record<string, unknown> | null {
+  if (failure?.code !== 'version-conflict' || failure.data === null || typeof failure.data !== 'object')
+    return null;
+  return failure.data as Record<string, unknown>;
+}
+
+/** The version a form sends: the one that was loaded, or after a conflict the newer one, which is shown then. */
+export function versionFor(failure: Failure | null, loaded: number): number {
+  const version = newerOf(failure)?.['version'];
+  return typeof version === 'number' ? version : loaded;
+}

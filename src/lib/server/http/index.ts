@@ -52,7 +52,9 @@ export interface ActionFailure {
 function valuesOf(form: FormData): Record<string, string> {
   const values: Record<string, string> = {};
   for (const [name, value] of form) {
-    if (typeof value === 'string' && !/password|secret|token/i.test(name)) values[name] = value;
+    if (typeof value !== 'string' || /password|secret|token/i.test(name)) continue;
+    // A name that comes several times (boxes of one question) keeps all its values.
+    values[name] = name in values ? `${values[name]},${value}` : value;
   }
   return values;
 }
