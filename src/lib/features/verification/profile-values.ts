@@ -23,7 +23,7 @@ interface Profile {
 
 /** What stands in the form: what was saved last, or the empty form with the company's name. */
 export function profileValues(profile: Profile | null, unitSet: UnitSet, companyName: string): ProfileValues {
-  const { shapes = [], work = [], tests = [], ...lengths } = profile?.capabilities ?? {};
+  const capabilities = profile?.capabilities;
   const address = profile?.worksAddress;
   const length = (value: number | null | undefined) => formatField(value ?? null, 'length', unitSet);
   return {
@@ -36,11 +36,15 @@ export function profileValues(profile: Profile | null, unitSet: UnitSet, company
       worksCity: address?.city ?? '',
       worksRegion: address?.region ?? '',
       worksCountry: address?.country ?? '',
-      tubeMin: length(lengths.tubeMin),
-      tubeMax: length(lengths.tubeMax),
-      coilDiameterMax: length(lengths.coilDiameterMax),
-      coilLengthMax: length(lengths.coilLengthMax),
+      tubeMin: length(capabilities?.tubeMin),
+      tubeMax: length(capabilities?.tubeMax),
+      coilDiameterMax: length(capabilities?.coilDiameterMax),
+      coilLengthMax: length(capabilities?.coilLengthMax),
     },
-    lists: { shapes, work, tests },
+    lists: {
+      shapes: capabilities?.shapes ?? [],
+      work: capabilities?.work ?? [],
+      tests: capabilities?.tests ?? [],
+    },
   };
 }
