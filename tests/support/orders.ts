@@ -24,8 +24,10 @@ import {
   submitDrawing,
   submitMilestone,
 } from '../../src/lib/server/orders/index.ts';
+import { requestForUpdate, setRequestState } from '../../src/lib/server/requests/index.ts';
 import type { MoneyWorld } from './money.ts';
 import { aCompany, aMember, anAdmin } from './people.ts';
+import { aPostedRequest } from './requests.ts';
 
 /** Both companies with a person in every role that matters, and strangers. */
 export interface Cast {
@@ -150,9 +152,11 @@ export interface TestOrder {
 export async function anOrder(db: Database, cast: Cast, options: OrderOptions = {}): Promise<TestOrder> {
   const net = options.net ?? 100_000;
   const tax = options.tax ?? 19_000;
-  const made = await transact(db, (tx) =>
-    createOrder(tx, cast.purchaser, {
-      requestId: newId(),
+  const { requestId } = await aPostedRequest(db, cast.engineer, cast.buyerId);
+  const made = await transact(db, async (tx) => {
+    await setRequestState(tx, cast.purchaser, await requestForUpdate(tx, requestId), 'award');
+    return createOrder(tx, cast.purchaser, {
+      requestId,
       bidId: newId(),
       buyerCompanyId: cast.buyerId,
       fabricatorCompanyId: cast.fabricatorId,
@@ -170,8 +174,8 @@ export async function anOrder(db: Database, cast: Cast, options: OrderOptions = 
       buyerZone: options.buyerZone ?? 'Europe/Berlin',
       title: 'Coil for pin ends',
       needBy: null,
-    }),
-  );
+    });
+  });
   const rows = await milestonesOf(db, made.orderId);
   const ids = Object.fromEntries(rows.map((row) => [row.kind, row.id])) as Record<MilestoneKind, string>;
   return { ...made, milestone: ids };

@@ -12,7 +12,7 @@ import { transact, type Database, type Reader, type Tx } from '../db/index.ts';
 import { company } from '../db/schema/companies.ts';
 import { payoutAccount } from '../db/schema/money.ts';
 import { coilOrder, milestone } from '../db/schema/orders.ts';
-import { setAttention, unsafeMilestone, unsafeOrder } from '../orders/index.ts';
+import { lookAgain, setAttention, unsafeMilestone, unsafeOrder } from '../orders/index.ts';
 import { executeOperation } from './execute.ts';
 import { latestOperation, planOperation } from './operations.ts';
 import { releasePurpose } from './close-money.ts';
@@ -233,6 +233,7 @@ async function resumePayouts(tx: Tx, companyId: string): Promise<void> {
   for (const { id, orderId } of waiting) {
     const row = await unsafeMilestone(tx, id);
     await setAttention(tx, id, null);
+    await lookAgain(tx, orderId);
     if (row.money !== 'releasing' && row.money !== 'splitting') continue;
     const op = await latestOperation(tx, releasePurpose(id));
     if (op?.state === 'failed')

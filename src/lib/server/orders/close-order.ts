@@ -3,6 +3,7 @@ import { businessNow } from '../adapters/clock.ts';
 import type { By } from '../audit/index.ts';
 import type { Tx } from '../db/index.ts';
 import { moveOrder } from './acknowledge-order.ts';
+import { requestForUpdate, setRequestState } from '../requests/index.ts';
 import { milestonesOf, openDisputesOf, unsafeOrder } from './queries.ts';
 import { tell } from './tell.ts';
 
@@ -38,6 +39,7 @@ export async function finishIfDone(tx: Tx, by: By, orderId: string): Promise<boo
   );
   if (!closed || (await openDisputesOf(tx, { orderId })).length > 0) return false;
   await moveOrder(tx, by, order, 'finish', { closedAt: await businessNow(tx) });
+  await closeRequest(tx, by, order.requestId, 'finish');
   await tell(tx, order, {
     kind: 'order-done',
     by: 'system',
@@ -49,4 +51,14 @@ export async function finishIfDone(tx: Tx, by: By, orderId: string): Promise<boo
     fabricator: ['estimator', 'builder'],
   });
   return true;
+}
+
+/** The request follows its order: done, ended, or open for another award when nothing had started. */
+export async function closeRequest(
+  tx: Tx,
+  by: By,
+  requestId: string,
+  event: 'finish' | 'end' | 're-open',
+): Promise<void> {
+  await setRequestState(tx, by, await requestForUpdate(tx, requestId), event);
 }

@@ -19,7 +19,9 @@ export {
   shipOrder,
   type ShipInput,
 } from './delivery.ts';
-export { finishIfDone, resumeAfterFunding } from './close-order.ts';
+export { lookAgain, resumeClocks, stopClocks } from './clocks.ts';
+export { orderWaits, waitFacts } from './facts.ts';
+export { closeRequest, finishIfDone, resumeAfterFunding } from './close-order.ts';
 export { moveMoney, moveWork, openWhatCanStart, setAttention, windowEnd } from './milestones.ts';
 export {
   companyOf,

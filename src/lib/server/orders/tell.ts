@@ -1,10 +1,11 @@
+import { eq } from 'drizzle-orm';
 import type { Role } from '../../domain/roles.ts';
 import { businessNow } from '../adapters/clock.ts';
 import { newId } from '../adapters/ids.ts';
 import type { By } from '../audit/index.ts';
 import { notifyCompany } from '../companies/recipients.ts';
 import type { Tx } from '../db/index.ts';
-import { orderEvent } from '../db/schema/orders.ts';
+import { coilOrder, orderEvent } from '../db/schema/orders.ts';
 import { orderNumberText, type OrderRow, type Side } from './queries.ts';
 
 export interface OrderNews {
@@ -53,6 +54,8 @@ export async function tell(tx: Tx, order: OrderRow, news: OrderNews): Promise<vo
     companyId,
     at,
   });
+  // Whatever happened may have changed what is waited for.
+  await tx.update(coilOrder).set({ nextCheckAt: 0 }).where(eq(coilOrder.id, order.id));
   const href = `/orders/${order.id}${news.anchor ? `#${news.anchor}` : ''}`;
   const number = orderNumberText(order);
   const send = async (side: Side, roles: readonly Role[] | 'all', own: string[]) => {

@@ -4,6 +4,7 @@ import { lapseBids } from '../bids/index.ts';
 import type { Database } from '../db/index.ts';
 import { clearUnfinishedUploads } from '../files/index.ts';
 import { recoverMoney } from '../money/index.ts';
+import { runOrderDeadlines } from './order-deadlines.ts';
 import { runRequestDeadlines } from './request-deadlines.ts';
 
 export interface RecurringTask {
@@ -40,4 +41,5 @@ export const recurringTasks: readonly RecurringTask[] = [
     },
   },
   { name: 'service-probes', everyMs: 30_000, run: (db) => probeServices(db), workerOnly: true },
+  { name: 'order-deadlines', everyMs: 5_000, run: runOrderDeadlines },
 ];
