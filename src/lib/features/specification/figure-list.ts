@@ -1,0 +1,200 @@
+/** The figures of a check by subject, as names and values for people. Pure, so that papers and screens agree. */
+import type { CheckResult, Figure, LadderRow } from '$lib/induction/check/types.ts';
+import type { Dimension, UnitSet } from '$lib/induction/units/dimensions.ts';
+import { formatFigure, formatQuantity } from '$lib/induction/units/format-quantity.ts';
+
+export interface FigureLine {
+  name: string;
+  value: string;
+  /** "19.5 to 20.5 kHz"; empty where the value has no band. */
+  range: string;
+  note: string;
+}
+
+export interface FigureGroup {
+  title: string;
+  lines: FigureLine[];
+}
+
+const limiterText: Record<LadderRow['hot']['limitedBy'], string> = {
+  'rated-power': 'limited by the rated power',
+  voltage: 'limited by the inverter’s voltage',
+  current: 'limited by the inverter’s current',
+  bank: 'limited by the capacitor bank',
+  coil: 'limited by the coil',
+};
+
+export function limiterOf(row: LadderRow['hot']): string {
+  return limiterText[row.limitedBy];
+}
+
+/** The row that is fitted now, or the advised one where none is. */
+export function fittedRow(result: CheckResult): LadderRow | undefined {
+  return result.ladder.find((row) => row.fitted) ?? result.ladder.find((row) => row.advised);
+}
+
+type Entry = [name: string, figure: Figure | null | undefined, note?: string, dimension?: Dimension];
+
+function contributors(figure: Figure): string {
+  const names = figure.contributors.map((one) => one.name);
+  return names.length === 0 ? '' : `Band mostly from ${names.join(', ')}.`;
+}
+
+function lines(entries: readonly Entry[], unitSet: UnitSet): FigureLine[] {
+  return entries.flatMap(([name, figure, note = '', dimension]) => {
+    if (!figure) return [];
+    const shown = formatFigure(figure, unitSet, { dimension });
+    return [
+      {
+        name,
+        value: shown.value,
+        range: figure.high > figure.low ? shown.range : '',
+        note: [note, contributors(figure)].filter(Boolean).join(' '),
+      },
+    ];
+  });
+}
+
+/** The handful of figures that decide: they stand first and alone. */
+export function headlines(result: CheckResult, unitSet: UnitSet): FigureLine[] {
+  const { tank, cold, hot, bare } = result;
+  return lines(
+    [
+      [
+        'Operating frequency',
+        tank?.operatingFrequency ?? null,
+        tank ? `resonance cold ${formatFigure(tank.resonanceCold, unitSet).value}` : '',
+      ],
+      [
+        'Deliverable power',
+        tank?.deliverablePower,
+        fittedRow(result) ? limiterOf(fittedRow(result)!.hot) : '',
+      ],
+      ['Efficiency of the coil, hot', hot?.efficiency ?? cold?.efficiency, '', 'fraction'],
+      ['Time to target', result.heating?.timeAtDeliverablePower],
+      ['Bare inductance', bare?.inductance],
+      ['Water flow', result.water?.flow],
+    ],
+    unitSet,
+  );
+}
+
+/** Every figure the check gave, grouped. */
+export function figureGroups(result: CheckResult, unitSet: UnitSet): FigureGroup[] {
+  const { bare, cold, hot, tank, skin, heating, water, mechanics, surroundings, leads } = result;
+  const at = (hertz: number | undefined) =>
+    hertz === undefined ? '' : `at ${formatQuantity(hertz, 'Hz', unitSet, null, { digits: 3 })}`;
+  const plain = (
+    name: string,
+    value: number | null | undefined,
+    unit: 'm' | 'Pa' | '1',
+    note = '',
+  ): FigureLine[] =>
+    value === null || value === undefined
+      ? []
+      : [{ name, value: formatQuantity(value, unit, unitSet, null, { digits: 3 }), range: '', note }];
+  const groups: FigureGroup[] = [
+    {
+      title: 'Coil',
+      lines: lines(
+        [
+          ['Bare inductance', bare?.inductance, at(bare?.frequency)],
+          ['Bare resistance', bare?.resistance, at(bare?.frequency)],
+          ['Bare Q', bare?.q],
+          ['Inductance with part, cold', cold?.inductance, at(cold?.frequency)],
+          ['Inductance with part, hot', hot?.inductance, at(hot?.frequency)],
+          ['Resistance with part, cold', cold?.resistance],
+          ['Resistance with part, hot', hot?.resistance],
+          ['Q with part, hot', hot?.q],
+          ['Efficiency, cold', cold?.efficiency, '', 'fraction'],
+          ['Efficiency, hot', hot?.efficiency, '', 'fraction'],
+          ['Inductance of the leads', leads?.inductance],
+        ],
+        unitSet,
+      ),
+    },
+    {
+      title: 'Tank',
+      lines: lines(
+        [
+          ['Inductance the bank sees', tank?.inductance, tank ? `referred to the ${tank.referredTo}` : ''],
+          ['Resonance, cold', tank?.resonanceCold],
+          ['Resonance, hot', tank?.resonanceHot],
+          ['Operating frequency', tank?.operatingFrequency],
+          ['Q of the tank', tank?.q],
+          ['Deliverable power', tank?.deliverablePower],
+          ['Coil current', tank?.coilCurrent],
+          ['Coil voltage', tank?.coilVoltage],
+          ['Coil voltage to the tap', tank?.coilVoltageToTap],
+          ['Bank current', tank?.bankCurrent],
+          ['Reactive power', tank?.reactivePower],
+          ['Loss in the bank', tank?.bankLoss],
+          ['Loss in the transformer', tank?.transformerLoss],
+        ],
+        unitSet,
+      ),
+    },
+    {
+      title: 'Heating',
+      lines: [
+        ...lines(
+          [
+            ['Skin depth in the part, cold', skin?.partCold],
+            ['Skin depth in the part, hot', skin?.partHot],
+            ['Skin depth in the copper', skin?.copper],
+            ['Energy into the part', heating?.energy],
+            ['Mean power needed', heating?.meanPowerNeeded],
+            ['Time at deliverable power', heating?.timeAtDeliverablePower],
+            ['Loss from the surface', heating?.surfaceLoss],
+          ],
+          unitSet,
+        ),
+        ...plain('Diameter over skin depth, cold', skin?.diameterOverDepthCold, '1'),
+        ...plain('Diameter over skin depth, hot', skin?.diameterOverDepthHot, '1'),
+      ],
+    },
+    {
+      title: 'Water',
+      lines: [
+        ...lines(
+          [
+            ['Heat to carry away', water?.duty],
+            ['Flow', water?.flow],
+            ['Velocity', water?.velocity],
+            ['Temperature rise', water?.temperatureRise],
+            ['Outlet temperature', water?.outletTemperature],
+            ['Wall temperature', water?.wallTemperature],
+            ['Pressure drop', water?.pressureDrop],
+          ],
+          unitSet,
+        ),
+        ...plain('Water circuits advised', water?.circuitsAdvised, '1'),
+      ],
+    },
+    {
+      title: 'Mechanics and surroundings',
+      lines: [
+        ...plain('Clear distance between turns', mechanics?.clearanceBetweenTurns, 'm'),
+        ...plain('Clearance to the part, cold', mechanics?.radialClearanceCold, 'm'),
+        ...plain('Clearance to the part, hot', mechanics?.radialClearanceHot, 'm'),
+        ...plain('Wall after bending', mechanics?.wallAfterBending, 'm'),
+        ...plain('Test pressure', mechanics?.testPressure, 'Pa'),
+        ...lines(
+          [
+            ['Working pressure rating', mechanics?.workingPressureRating],
+            ['Keep-out distance', surroundings?.keepOutDistance, surroundings?.referenceName, 'distance'],
+          ],
+          unitSet,
+        ),
+        ...lines(
+          (surroundings?.points ?? []).map((point): Entry => [
+            `Flux density: ${point.name}`,
+            point.fluxDensity,
+          ]),
+          unitSet,
+        ),
+      ],
+    },
+  ];
+  return groups.filter((group) => group.lines.length > 0);
+}

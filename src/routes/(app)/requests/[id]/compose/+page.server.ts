@@ -1,0 +1,43 @@
+import { redirect } from '@sveltejs/kit';
+import { z } from 'zod';
+import { database } from '$lib/server/db/index.ts';
+import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
+import { listMachines, viewMachine } from '$lib/server/machines/index.ts';
+import { requestForUpdate, viewDraft } from '$lib/server/requests/index.ts';
+import { resultOf } from '$lib/server/checks/index.ts';
+import { postRequest } from '$lib/server/workflows/post-request.ts';
+import type { Actions, PageServerLoad } from './$types.ts';
+
+export const load: PageServerLoad = async (event) => {
+  const actor = actorOf(event);
+  const { id } = event.params;
+  const state = await loading(async () => (await requestForUpdate(database(), id)).state);
+  // A posted request is no longer composed; whoever may not see it learns nothing from the way there.
+  if (state !== 'draft') redirect(303, `/requests/${id}`);
+  return loading(async () => {
+    const { check, ...draft } = await viewDraft(database(), actor, id);
+    const listed = await listMachines(database(), actor, { companyId: draft.companyId });
+    const machines = await Promise.all(
+      listed.slice(0, 100).map((item) => viewMachine(database(), actor, item.id)),
+    );
+    return {
+      draft,
+      check: check ? { ...check, body: undefined, result: resultOf(check.body) } : null,
+      machines: machines.map(({ id: machineId, version, body }) => ({ id: machineId, version, body })),
+      timeZone: actor.timeZone,
+    };
+  });
+};
+
+const posting = z.object({
+  version: z.coerce.number().int().min(1),
+  checkId: z.string({ error: 'The server has not checked this version yet.' }).min(1),
+});
+
+export const actions: Actions = {
+  post: formAction('post', async (form, event) => {
+    const input = parseInput(posting, Object.fromEntries(form));
+    await postRequest(database(), actorOf(event), { requestId: event.params.id, ...input });
+    redirect(303, `/requests/${event.params.id}`);
+  }),
+};
