@@ -208,17 +208,19 @@ export class Api {
     const matched = matchRoute(this.routes, call.method, call.path);
     if (matched === undefined) throw unknownRoute(call.method, call.path);
     const fingerprint = this.idempotency.fingerprint(call.method, call.path, call.body);
+    const fault = this.faults.take(call.method, call.path);
     if (call.key !== null) {
       const known = this.idempotency.begin(call.key, fingerprint);
       if (known !== undefined) {
         entry.status = known.status;
         entry.replayed = true;
         const replay = { ...headers, 'idempotent-replayed': 'true', 'original-request': known.requestId };
-        sendJson(response, known.status, known.body, replay);
+        // A stored answer can be lost on its way like any other.
+        const answer = { status: known.status, body: known.body, headers: {}, stored: false };
+        this.answer(request, response, answer, fault, replay);
         return;
       }
     }
-    const fault = this.faults.take(call.method, call.path);
     try {
       const wait = this.latencyMs + (fault?.kind === 'delay' ? fault.delayMs : 0);
       if (wait > 0) await new Promise((resolve) => setTimeout(resolve, wait));

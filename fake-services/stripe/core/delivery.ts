@@ -181,11 +181,14 @@ export class Deliverer {
 
   /** Everything that waits is tried now, whatever its time, and the round is awaited. */
   async flush(): Promise<void> {
-    await this.running;
+    while (this.running !== undefined) await this.running;
     for (const row of this.waitingRows()) this.finish(row, { nextAt: 0 });
     const paused = this.faults.paused;
     this.faults.paused = false;
-    await this.round();
+    // Takes the place of the timer's round: two at once would send everything twice.
+    this.running = this.round();
+    await this.running;
+    this.running = undefined;
     this.faults.paused = paused;
     this.service.store.commit();
   }
