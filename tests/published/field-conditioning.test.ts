@@ -56,11 +56,21 @@ describe('close turns and a 1 mm gap', () => {
 
 describe('ordinary coil over frequency', () => {
   const coil = helix(8, 0.045, 0.0125, roundSection(0.01, 0.0015));
-  it.each([50, 500, 5e3, 5e4, 5e5, 1e6])('at %d Hz the preview is within its promise of the fine setting', (f) => {
-    const part = { outerRadius: 0.03, innerRadius: 0, low: -0.04, high: 0.06, resistivity: 7e-7, permeability: 1 };
-    const a = solveCase({ coil, copper: COPPER, frequency: f, part }, 'preview');
-    const b = solveCase({ coil, copper: COPPER, frequency: f, part }, 'fine');
-    expect(Math.abs(a.inductance / b.inductance - 1)).toBeLessThan(5e-3);
-    expect(Math.abs(a.resistance / b.resistance - 1)).toBeLessThan(0.02);
-  });
+  it.each([50, 500, 5e3, 5e4, 5e5, 1e6])(
+    'at %d Hz the preview is within its promise of the fine setting',
+    (f) => {
+      const part = {
+        outerRadius: 0.03,
+        innerRadius: 0,
+        low: -0.04,
+        high: 0.06,
+        resistivity: 7e-7,
+        permeability: 1,
+      };
+      const a = solveCase({ coil, copper: COPPER, frequency: f, part }, 'preview');
+      const b = solveCase({ coil, copper: COPPER, frequency: f, part }, 'fine');
+      expect(Math.abs(a.inductance / b.inductance - 1)).toBeLessThan(5e-3);
+      expect(Math.abs(a.resistance / b.resistance - 1)).toBeLessThan(0.02);
+    },
+  );
 });

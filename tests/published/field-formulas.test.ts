@@ -55,7 +55,8 @@ function solveBare(coil: RingCoil, resistivity: number, frequency: number) {
 
 describe('ring kernel', () => {
   it.each(valuesOf('maxwell_').map((v) => [v.id, v] as const))('mutual inductance of circles %s', (_, v) => {
-    const m = mutualInductance(input(v, 'A_cm') / 100, input(v, 'a_cm') / 100, input(v, 'd_cm') / 100) * MICRO;
+    const m =
+      mutualInductance(input(v, 'A_cm') / 100, input(v, 'a_cm') / 100, input(v, 'd_cm') / 100) * MICRO;
     check('field', { ...v, value: m, expected: single(v) });
   });
 
@@ -67,31 +68,37 @@ describe('ring kernel', () => {
     check('field', { ...v, value: (mutualInductance(a, a, d) * MICRO) / (a * 100), expected: single(v) });
   });
 
-  it.each(valuesOf('nagaoka_').map((v) => [v.id, v] as const))('gives the coefficient of the current sheet %s', (_, v) => {
-    const ratio = input(v, 'D_over_l');
-    const d = 0.1;
-    const l = d / ratio;
-    const long = (MU0 * Math.PI * d * d) / 4 / l;
-    check('field', { ...v, value: currentSheet(1, d, l) / long, expected: single(v) });
-  });
+  it.each(valuesOf('nagaoka_').map((v) => [v.id, v] as const))(
+    'gives the coefficient of the current sheet %s',
+    (_, v) => {
+      const ratio = input(v, 'D_over_l');
+      const d = 0.1;
+      const l = d / ratio;
+      const long = (MU0 * Math.PI * d * d) / 4 / l;
+      check('field', { ...v, value: currentSheet(1, d, l) / long, expected: single(v) });
+    },
+  );
 
   it.each(valuesOf('sheet_').map((v) => [v.id, v] as const))('current-sheet inductance %s', (_, v) => {
     const l = currentSheet(input(v, 'N'), input(v, 'D_mm') / 1000, input(v, 'l_mm') / 1000) * MICRO;
     check('field', { ...v, value: l, expected: single(v) });
   });
 
-  it.each(valuesOf('rosa_B_').map((v) => [v.id, v] as const))('ring stack less current sheet gives Rosa %s', (_, v) => {
-    // Large rings: N·(D/2)·μ0·(A + B) = L_sheet − L_rings, with uniform current A = 5/4 − ln 2 + ln(d/p).
-    const n = input(v, 'turns');
-    const pitch = 0.01;
-    const wire = 0.005;
-    const d = 200;
-    let rings = n * MU0 * (d / 2) * (Math.log((8 * d) / wire) - 1.75);
-    for (let k = 1; k < n; k++) rings += 2 * (n - k) * mutualInductance(d / 2, d / 2, k * pitch);
-    const a = 1.25 - Math.log(2) + Math.log(wire / pitch);
-    const b = (currentSheet(n, d, n * pitch) - rings) / (MU0 * n * (d / 2)) - a;
-    check('field', { ...v, value: b, expected: single(v), tolerance: { abs: 3e-4 } });
-  });
+  it.each(valuesOf('rosa_B_').map((v) => [v.id, v] as const))(
+    'ring stack less current sheet gives Rosa %s',
+    (_, v) => {
+      // Large rings: N·(D/2)·μ0·(A + B) = L_sheet − L_rings, with uniform current A = 5/4 − ln 2 + ln(d/p).
+      const n = input(v, 'turns');
+      const pitch = 0.01;
+      const wire = 0.005;
+      const d = 200;
+      let rings = n * MU0 * (d / 2) * (Math.log((8 * d) / wire) - 1.75);
+      for (let k = 1; k < n; k++) rings += 2 * (n - k) * mutualInductance(d / 2, d / 2, k * pitch);
+      const a = 1.25 - Math.log(2) + Math.log(wire / pitch);
+      const b = (currentSheet(n, d, n * pitch) - rings) / (MU0 * n * (d / 2)) - a;
+      check('field', { ...v, value: b, expected: single(v), tolerance: { abs: 3e-4 } });
+    },
+  );
 
   it.each(valuesOf('spiral_ring_').map((v) => [v.id, v] as const))('flat spiral as rings %s', (_, v) => {
     const a = input(v, 'od_mm') / 2000;
@@ -106,29 +113,41 @@ describe('ring kernel', () => {
 });
 
 describe('single rings solved as conductors', () => {
-  it.each(valuesOf('ring_25').map((v) => [v.id, v] as const))('direct-current limit of a solid ring %s', (_, v) => {
-    const r = input(v, 'a_cm') / 100;
-    const a = input(v, 'rho_cm') / 100;
-    const s = solveBare(roundCoil(1, r, a, a, 2 * a), COPPER_20, 1);
-    // 1e-4 for a thin ring; the operator's curvature error is of order (a/r)².
-    check('field', { ...v, value: (s.reactance / (2 * Math.PI)) * 1e9, expected: single(v), tolerance: { rel: 5e-4 } });
-  });
+  it.each(valuesOf('ring_25').map((v) => [v.id, v] as const))(
+    'direct-current limit of a solid ring %s',
+    (_, v) => {
+      const r = input(v, 'a_cm') / 100;
+      const a = input(v, 'rho_cm') / 100;
+      const s = solveBare(roundCoil(1, r, a, a, 2 * a), COPPER_20, 1);
+      // 1e-4 for a thin ring; the operator's curvature error is of order (a/r)².
+      check('field', {
+        ...v,
+        value: (s.reactance / (2 * Math.PI)) * 1e9,
+        expected: single(v),
+        tolerance: { rel: 5e-4 },
+      });
+    },
+  );
 
-  it.each(valuesOf('loop_hf_').map((v) => [v.id, v] as const))('thin-skin limit near the thin-ring formula %s', (_, v) => {
-    const r = input(v, 'Dmean_mm') / 2000;
-    const a = input(v, 'tube_od_mm') / 2000;
-    const s = solveBare(roundCoil(1, r, a, a / 2, 2 * a), COPPER_20, 1e11);
-    // The formula keeps the current uniform around; the solution draws it inwards: lower by up to (1.5·a/r)².
-    const l = (s.reactance / (2 * Math.PI * 1e11)) * MICRO;
-    check('field', { ...v, value: l, expected: single(v), tolerance: { rel: 2.5 * (a / r) ** 2 } });
-    expect(l).toBeLessThan(single(v));
-  });
+  it.each(valuesOf('loop_hf_').map((v) => [v.id, v] as const))(
+    'thin-skin limit near the thin-ring formula %s',
+    (_, v) => {
+      const r = input(v, 'Dmean_mm') / 2000;
+      const a = input(v, 'tube_od_mm') / 2000;
+      const s = solveBare(roundCoil(1, r, a, a / 2, 2 * a), COPPER_20, 1e11);
+      // The formula keeps the current uniform around; the solution draws it inwards: lower by up to (1.5·a/r)².
+      const l = (s.reactance / (2 * Math.PI * 1e11)) * MICRO;
+      check('field', { ...v, value: l, expected: single(v), tolerance: { rel: 2.5 * (a / r) ** 2 } });
+      expect(l).toBeLessThan(single(v));
+    },
+  );
 });
 
 describe('skin effect', () => {
   it.each(valuesOf('delta_').map((v) => [v.id, v] as const))('skin depth %s', (_, v) => {
     const inputs = v.inputs as Record<string, number>;
-    const rho = inputs['rho'] ?? (inputs['rho_uohmcm'] === undefined ? COPPER_20 : inputs['rho_uohmcm'] * 1e-8);
+    const rho =
+      inputs['rho'] ?? (inputs['rho_uohmcm'] === undefined ? COPPER_20 : inputs['rho_uohmcm'] * 1e-8);
     const scale = v.inputs['unit'] === 'cm' ? 100 : 1000;
     check('field', {
       ...v,
@@ -144,7 +163,12 @@ describe('skin effect', () => {
     const dc = COPPER_20 / (Math.PI * a * a);
     // Layered solution: a tenth of a per cent beside the table's own digits.
     const tolerance = { abs: Math.max(5e-4, 2e-3 * single(v)) };
-    check('field', { ...v, value: straightTubeImpedance(a, a, COPPER_20, f).re / dc, expected: single(v), tolerance });
+    check('field', {
+      ...v,
+      value: straightTubeImpedance(a, a, COPPER_20, f).re / dc,
+      expected: single(v),
+      tolerance,
+    });
   });
 
   it.each(valuesOf('tube_').map((v) => [v.id, v] as const))('isolated tube %s', (_, v) => {
@@ -200,14 +224,22 @@ describe('straight leads and loops', () => {
     }
   });
 
-  it.each(valuesOf('rect_loop', 'square_loop').map((v) => [v.id, v] as const))('rectangular loop %s', (_, v) => {
-    const x = input(v, 'a_mm') / 1000;
-    const y = Number(v.inputs['b_mm'] ?? v.inputs['a_mm']) / 1000;
-    const a = input(v, 'od_mm') / 2000;
-    const loop = Float64Array.from([0, 0, 0, x, 0, 0, x, y, 0, 0, y, 0, 0, 0, 0]);
-    // Grover's form drops terms of order (a/side); the regularised integral keeps them.
-    check('field', { ...v, value: pathInductance([loop], a) * MICRO, expected: single(v), tolerance: { rel: 1.5e-2 } });
-  });
+  it.each(valuesOf('rect_loop', 'square_loop').map((v) => [v.id, v] as const))(
+    'rectangular loop %s',
+    (_, v) => {
+      const x = input(v, 'a_mm') / 1000;
+      const y = Number(v.inputs['b_mm'] ?? v.inputs['a_mm']) / 1000;
+      const a = input(v, 'od_mm') / 2000;
+      const loop = Float64Array.from([0, 0, 0, x, 0, 0, x, y, 0, 0, y, 0, 0, 0, 0]);
+      // Grover's form drops terms of order (a/side); the regularised integral keeps them.
+      check('field', {
+        ...v,
+        value: pathInductance([loop], a) * MICRO,
+        expected: single(v),
+        tolerance: { rel: 1.5e-2 },
+      });
+    },
+  );
 });
 
 describe('Medhurst, wound as thirty turns', () => {

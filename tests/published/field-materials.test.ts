@@ -35,23 +35,34 @@ describe('published material values', () => {
     check('materials', { ...v, value: steel.enthalpy(input(v, 'T_C')) / 1000, expected: single(v) });
   });
 
-  it.each(valuesOf('ec3ss_').map((v) => [v.id, v] as const))('heat and conductivity of stainless steel %s', (_, v) => {
-    const t = input(v, 'T_C');
-    const value = v.id.startsWith('ec3ss_cp') ? stainless.specificHeat(t) : stainless.conductivity(t);
-    check('materials', { ...v, value, expected: single(v) });
-  });
+  it.each(valuesOf('ec3ss_').map((v) => [v.id, v] as const))(
+    'heat and conductivity of stainless steel %s',
+    (_, v) => {
+      const t = input(v, 'T_C');
+      const value = v.id.startsWith('ec3ss_cp') ? stainless.specificHeat(t) : stainless.conductivity(t);
+      check('materials', { ...v, value, expected: single(v) });
+    },
+  );
 
   it.each(valuesOf('rho304_').map((v) => [v.id, v] as const))('resistivity of 304 %s', (_, v) => {
     check('materials', { ...v, value: stainless.resistivity(input(v, 'T_C')) * 1e8, expected: single(v) });
   });
 
   it.each(valuesOf('rho_graphite').map((v) => [v.id, v] as const))('resistivity of graphite %s', (_, v) => {
-    check('materials', { ...v, value: material('graphite').resistivity(input(v, 'T_C')) * 1e8, expected: single(v) });
+    check('materials', {
+      ...v,
+      value: material('graphite').resistivity(input(v, 'T_C')) * 1e8,
+      expected: single(v),
+    });
   });
 
   it('permeability of saturated steel beside the power law of the literature', () => {
     for (const v of valuesOf('mur_')) {
-      check('materials', { ...v, value: relativePermeability(steel, 20, input(v, 'H_A_per_m')), expected: single(v) });
+      check('materials', {
+        ...v,
+        value: relativePermeability(steel, 20, input(v, 'H_A_per_m')),
+        expected: single(v),
+      });
     }
   });
 
@@ -70,7 +81,8 @@ describe('the library', () => {
       for (const record of Object.values(m.records)) {
         expect(record.source.length, m.id).toBeGreaterThan(5);
         expect(record.uncertainty, m.id).toBeGreaterThanOrEqual(0);
-        if (record.standing === 'memory') expect(record.source.toLowerCase(), m.id).toMatch(/memory|permeability/);
+        if (record.standing === 'memory')
+          expect(record.source.toLowerCase(), m.id).toMatch(/memory|permeability/);
       }
     }
   });
@@ -114,6 +126,8 @@ describe('the library', () => {
       solidusC: null,
     };
     expect(() => materialOf({ kind: 'own', own })).toThrow(/must be a number/);
-    expect(() => materialOf({ kind: 'own', own: { ...own, resistivityHot: 1e-6, density: -1 } })).toThrow(/Density/);
+    expect(() => materialOf({ kind: 'own', own: { ...own, resistivityHot: 1e-6, density: -1 } })).toThrow(
+      /Density/,
+    );
   });
 });

@@ -96,7 +96,14 @@ describe('properties of the field solution', () => {
         fc.double({ min: -0.02, max: 0.02, noNaN: true }),
         (turns, spacing, gap, logF, offset) => {
           const coil = helix(turns, 0.02 + gap + 0.004, 0.008 * spacing, roundSection(0.008, 0.001));
-          const part = { outerRadius: 0.02, innerRadius: 0, low: offset - 0.03, high: offset + 0.03, resistivity: 9e-7, permeability: 1 };
+          const part = {
+            outerRadius: 0.02,
+            innerRadius: 0,
+            low: offset - 0.03,
+            high: offset + 0.03,
+            resistivity: 9e-7,
+            permeability: 1,
+          };
           const s = solveCase({ coil, copper: COPPER, frequency: 10 ** logF, part }, 'default');
           expect(Math.abs(s.balance)).toBeLessThan(2e-4);
         },
@@ -125,7 +132,12 @@ describe('properties of the field solution', () => {
     const g = prepareGeometry(c.coil, [c.part], resolutionOf('default', c.coil, [c.part]));
     const e = elementsOf(g, skinDepth(c.part.resistivity, c.frequency, c.part.permeability));
     const n = e.nr * e.nz;
-    const z = solveLoad(e, c.frequency, new Float64Array(n).fill(c.part.resistivity), new Float64Array(POINTS_PER_ELEMENT * n).fill(5)).z;
+    const z = solveLoad(
+      e,
+      c.frequency,
+      new Float64Array(n).fill(c.part.resistivity),
+      new Float64Array(POINTS_PER_ELEMENT * n).fill(5),
+    ).z;
     const once = solveField(coilBlock(g, c.copper, c.frequency), [z]);
     const block = coilBlock(g, c.copper, c.frequency);
     prepareUpdates(block);
@@ -148,23 +160,44 @@ describe('properties of the field solution', () => {
     const operators = g.loads.map((load) => {
       const e = elementsOf(g, skinDepth(rho, f), load.load);
       const n = e.nr * e.nz;
-      return solveLoad(e, f, new Float64Array(n).fill(rho), new Float64Array(POINTS_PER_ELEMENT * n).fill(1)).z;
+      return solveLoad(e, f, new Float64Array(n).fill(rho), new Float64Array(POINTS_PER_ELEMENT * n).fill(1))
+        .z;
     });
     const two = solveField(coilBlock(g, COPPER, f), operators);
     const one = solveCase(
-      { coil, copper: COPPER, frequency: f, part: { outerRadius: 0.02, innerRadius: 0, low: -0.03, high: 0.03, resistivity: rho, permeability: 1 } },
+      {
+        coil,
+        copper: COPPER,
+        frequency: f,
+        part: {
+          outerRadius: 0.02,
+          innerRadius: 0,
+          low: -0.03,
+          high: 0.03,
+          resistivity: rho,
+          permeability: 1,
+        },
+      },
       'fine',
     );
     expect(Math.abs(two.reactance / one.reactance - 1)).toBeLessThan(5e-3);
-    expect(Math.abs((two.partPower[0] ?? 0) + (two.partPower[1] ?? 0) - one.load)).toBeLessThan(0.02 * one.load);
+    expect(Math.abs((two.partPower[0] ?? 0) + (two.partPower[1] ?? 0) - one.load)).toBeLessThan(
+      0.02 * one.load,
+    );
   });
 
   it('takes inductance away with a good conductor and adds it with a magnetic one', () => {
     const base = sample(1);
     if (base.part === null) throw new Error('no part');
     const bare = solveCase({ ...base, part: null }, 'default').inductance;
-    const copper = solveCase({ ...base, part: { ...base.part, resistivity: 2e-8, permeability: 1 } }, 'default');
-    const ferrite = solveCase({ ...base, part: { ...base.part, resistivity: 1, permeability: 200 } }, 'default');
+    const copper = solveCase(
+      { ...base, part: { ...base.part, resistivity: 2e-8, permeability: 1 } },
+      'default',
+    );
+    const ferrite = solveCase(
+      { ...base, part: { ...base.part, resistivity: 1, permeability: 200 } },
+      'default',
+    );
     expect(copper.inductance).toBeLessThan(bare);
     expect(ferrite.inductance).toBeGreaterThan(bare);
     expect(ferrite.load).toBeLessThan(1e-3 * ferrite.resistance + 1e-4);

@@ -25,7 +25,11 @@ import {
 } from '../../src/lib/induction/field/load-operator.ts';
 import { equidistributed } from '../../src/lib/induction/field/quadrature.ts';
 import { mutualInductance } from '../../src/lib/induction/field/ring-kernel.ts';
-import { leadPairInductance, pathInductance, thinPairInductance } from '../../src/lib/induction/field/segment-inductance.ts';
+import {
+  leadPairInductance,
+  pathInductance,
+  thinPairInductance,
+} from '../../src/lib/induction/field/segment-inductance.ts';
 import { describingPermeability } from '../../src/lib/induction/materials/magnetisation.ts';
 import { plainCoil } from './support/plain-coil.ts';
 import { roundSection, solveCase, type PlainCase, type PlainPart } from './support/field-cases.ts';
@@ -100,9 +104,23 @@ function caseOf(c: SolvedCase): PlainCase {
 const settings: SolverSetting[] = ['preview', 'default', 'fine'];
 const family = (f: string) => solvedCases.filter((c) => c.family === f && c.id !== 'D-T2').map((c) => c.id);
 
-function compare(c: SolvedCase, quantity: string, value: number, name: string, rel: number, setting: SolverSetting) {
+function compare(
+  c: SolvedCase,
+  quantity: string,
+  value: number,
+  name: string,
+  rel: number,
+  setting: SolverSetting,
+) {
   const source = `${c.method}; ${c.tool}`;
-  check('field', { id: `${c.id} ${setting}`, quantity, source, value, expected: want(c, name), tolerance: { rel } });
+  check('field', {
+    id: `${c.id} ${setting}`,
+    quantity,
+    source,
+    value,
+    expected: want(c, name),
+    tolerance: { rel },
+  });
 }
 
 describe('perfect-conductor limit of bare coils', () => {
@@ -189,7 +207,8 @@ function slice(outer: number, inner: number, depth: number, layers: number) {
   const b = buildBoundary([], roundSection(1, 0.1), 8, 3, [panels]);
   const body = b.bodies[0];
   if (body === undefined) throw new Error('no body');
-  const size = (r: number) => Math.min(depth / layers + 0.2 * Math.min(outer - r, inner > 0 ? r - inner : 1), outer / 8);
+  const size = (r: number) =>
+    Math.min(depth / layers + 0.2 * Math.min(outer - r, inner > 0 ? r - inner : 1), outer / 8);
   const grid: LoadGrid = {
     r: equidistributed(inner, outer, size, 6),
     z: Float64Array.of(-high, 0, high),
@@ -226,7 +245,14 @@ describe('infinite cylinders in a uniform field', () => {
     const s = solveLoad(e, f, new Float64Array(n).fill(rho), new Float64Array(9 * n).fill(1));
     const z = transfer(s.z, 1, 0);
     compare(c, 'power by elements', z.re * h * h * Math.PI * d, 'active_power_W_per_m', 2e-3, 'default');
-    compare(c, 'reactive power by elements', z.im * h * h * Math.PI * d, 'reactive_power_var_per_m', 2e-3, 'default');
+    compare(
+      c,
+      'reactive power by elements',
+      z.im * h * h * Math.PI * d,
+      'reactive_power_var_per_m',
+      2e-3,
+      'default',
+    );
   });
 
   it('E2-03: tube with an empty bore', () => {
@@ -281,7 +307,14 @@ describe('infinite cylinders in a uniform field', () => {
     const z = transfer(s.z, 1, 0);
     // The method's own stated error for cold steel, not the discretisation's.
     compare(c, 'power', z.re * h * h * Math.PI * d, 'active_power_time_domain_W_per_m', 0.05, 'default');
-    compare(c, 'reactive power', z.im * h * h * Math.PI * d, 'reactive_power_fundamental_time_domain_var_per_m', 0.15, 'default');
+    compare(
+      c,
+      'reactive power',
+      z.im * h * h * Math.PI * d,
+      'reactive_power_fundamental_time_domain_var_per_m',
+      0.15,
+      'default',
+    );
   });
 });
 
@@ -290,7 +323,14 @@ describe('thin wires along their true path', () => {
     const c = solvedCase('G-02');
     const loop = loopCoil(
       plainCoil({
-        winding: { shape: 'rectangular-helix', insideLength: 0.08, insideWidth: 0.03, cornerRadius: 0.006, turns: 4, pitch: 0.011 },
+        winding: {
+          shape: 'rectangular-helix',
+          insideLength: 0.08,
+          insideWidth: 0.03,
+          cornerRadius: 0.006,
+          turns: 4,
+          pitch: 0.011,
+        },
         outsideDiameter: 0.008,
       }),
     );
@@ -301,7 +341,10 @@ describe('thin wires along their true path', () => {
   it('G-08: hairpin', () => {
     const c = solvedCase('G-08');
     const loop = loopCoil(
-      plainCoil({ winding: { shape: 'hairpin', length: 0.3, legGap: 0.032, turns: 1, pitch: 0.01 }, outsideDiameter: 0.008 }),
+      plainCoil({
+        winding: { shape: 'hairpin', length: 0.3, legGap: 0.032, turns: 1, pitch: 0.01 },
+        outsideDiameter: 0.008,
+      }),
     );
     compare(c, 'L', pathInductance(loop.loops, 0.004), 'inductance_H', 5e-4, 'default');
   });
@@ -333,9 +376,18 @@ describe('thin wires along their true path', () => {
     }
     // What the product adds to a ring solution, on the reference's own ring solution.
     let stack = 0;
-    for (let i = 0; i < 3; i++) for (let j = 0; j < 3; j++) stack += mutualInductance(r, r, Math.hypot((i - j) * p, a));
+    for (let i = 0; i < 3; i++)
+      for (let j = 0; j < 3; j++) stack += mutualInductance(r, r, Math.hypot((i - j) * p, a));
     const pair = 0.2 * (leadPairInductance(2 * s, a) - thinPairInductance(2 * s, a));
-    const total = want(c, 'ring_stack_perfect_conductor_HF_H') + pathInductance([path(0.2)], a) - stack + pair;
-    compare(c, 'coil with leads', total, 'estimated_perfect_conductor_HF_inductance_with_200mm_leads_H', 0.02, 'default');
+    const total =
+      want(c, 'ring_stack_perfect_conductor_HF_H') + pathInductance([path(0.2)], a) - stack + pair;
+    compare(
+      c,
+      'coil with leads',
+      total,
+      'estimated_perfect_conductor_HF_inductance_with_200mm_leads_H',
+      0.02,
+      'default',
+    );
   });
 });

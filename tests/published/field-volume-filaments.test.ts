@@ -7,7 +7,13 @@ import { describe, expect, it } from 'vitest';
 import type { Section } from '../../src/lib/induction/coil/section.ts';
 import { mutualInductance } from '../../src/lib/induction/field/ring-kernel.ts';
 import { helix, roundSection, solveCase, type PlainCase } from './support/field-cases.ts';
-import { blockCells, circlesMutual, solveFilaments, tubeCells, type Filament } from './support/volume-filaments.ts';
+import {
+  blockCells,
+  circlesMutual,
+  solveFilaments,
+  tubeCells,
+  type Filament,
+} from './support/volume-filaments.ts';
 
 const COPPER = 1.85e-8;
 
@@ -25,7 +31,8 @@ function compare(c: PlainCase, cells: Filament[], limits: { l: number; r: number
   expect(reference.unknowns).toBeLessThanOrEqual(800);
   expect(Math.abs(s.inductance / reference.inductance - 1), 'L').toBeLessThan(limits.l);
   expect(Math.abs(s.resistance / reference.resistance - 1), 'R').toBeLessThan(limits.r);
-  if (limits.load !== undefined) expect(Math.abs(s.load / reference.load - 1), 'R of the part').toBeLessThan(limits.load);
+  if (limits.load !== undefined)
+    expect(Math.abs(s.load / reference.load - 1), 'R of the part').toBeLessThan(limits.load);
 }
 
 describe('volume filaments', () => {
@@ -40,30 +47,69 @@ describe('volume filaments', () => {
   });
 
   it('one turn of tube, 2 kHz', () => {
-    const c: PlainCase = { coil: helix(1, 0.03, 0.01, roundSection(0.01, 0.0015)), copper: COPPER, frequency: 2e3, part: null };
+    const c: PlainCase = {
+      coil: helix(1, 0.03, 0.01, roundSection(0.01, 0.0015)),
+      copper: COPPER,
+      frequency: 2e3,
+      part: null,
+    };
     compare(c, turnsOf(c, 6, 48), { l: 2e-3, r: 0.01 });
   });
 
   it('three close turns of thin tube, 5 kHz', () => {
-    const c: PlainCase = { coil: helix(3, 0.02, 0.0095, roundSection(0.008, 0.001)), copper: COPPER, frequency: 5e3, part: null };
+    const c: PlainCase = {
+      coil: helix(3, 0.02, 0.0095, roundSection(0.008, 0.001)),
+      copper: COPPER,
+      frequency: 5e3,
+      part: null,
+    };
     compare(c, turnsOf(c, 5, 44), { l: 2e-3, r: 0.015 });
   });
 
   it('two turns of solid rod, 1 kHz', () => {
-    const c: PlainCase = { coil: helix(2, 0.025, 0.012, roundSection(0.01, 0.005)), copper: COPPER, frequency: 1e3, part: null };
+    const c: PlainCase = {
+      coil: helix(2, 0.025, 0.012, roundSection(0.01, 0.005)),
+      copper: COPPER,
+      frequency: 1e3,
+      part: null,
+    };
     compare(c, turnsOf(c, 9, 40), { l: 3e-3, r: 0.015 });
   });
 
   it('one turn around a short stainless bar, 3 kHz', () => {
-    const part = { outerRadius: 0.015, innerRadius: 0, low: -0.012, high: 0.012, resistivity: 7.2e-7, permeability: 1 };
-    const c: PlainCase = { coil: helix(1, 0.025, 0.01, roundSection(0.01, 0.0015)), copper: COPPER, frequency: 3e3, part };
+    const part = {
+      outerRadius: 0.015,
+      innerRadius: 0,
+      low: -0.012,
+      high: 0.012,
+      resistivity: 7.2e-7,
+      permeability: 1,
+    };
+    const c: PlainCase = {
+      coil: helix(1, 0.025, 0.01, roundSection(0.01, 0.0015)),
+      copper: COPPER,
+      frequency: 3e3,
+      part,
+    };
     const bar = blockCells({ lowR: 0, highR: 0.015, lowZ: -0.012, highZ: 0.012 }, -1, 7.2e-7, 16, 22);
     compare(c, [...turnsOf(c, 6, 44), ...bar], { l: 3e-3, r: 0.015, load: 0.015 });
   });
 
   it('two turns in the bore of an offset tube, 4 kHz', () => {
-    const part = { outerRadius: 0.045, innerRadius: 0.035, low: -0.005, high: 0.02, resistivity: 4e-7, permeability: 1 };
-    const c: PlainCase = { coil: helix(2, 0.026, 0.012, roundSection(0.008, 0.001)), copper: COPPER, frequency: 4e3, part };
+    const part = {
+      outerRadius: 0.045,
+      innerRadius: 0.035,
+      low: -0.005,
+      high: 0.02,
+      resistivity: 4e-7,
+      permeability: 1,
+    };
+    const c: PlainCase = {
+      coil: helix(2, 0.026, 0.012, roundSection(0.008, 0.001)),
+      copper: COPPER,
+      frequency: 4e3,
+      part,
+    };
     const tube = blockCells({ lowR: 0.035, highR: 0.045, lowZ: -0.005, highZ: 0.02 }, -1, 4e-7, 14, 20);
     compare(c, [...turnsOf(c, 5, 44), ...tube], { l: 3e-3, r: 0.015, load: 0.015 });
   });

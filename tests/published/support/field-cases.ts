@@ -3,9 +3,18 @@ import type { PartBody, RingCoil } from '../../../src/lib/induction/coil/rings.t
 import type { Section } from '../../../src/lib/induction/coil/section.ts';
 import { skinDepth } from '../../../src/lib/induction/constants/physical.ts';
 import { coilBlock, solveField, type FieldSolution } from '../../../src/lib/induction/field/coil-block.ts';
-import { prepareGeometry, resolutionOf, type FieldGeometry } from '../../../src/lib/induction/field/field-geometry.ts';
+import {
+  prepareGeometry,
+  resolutionOf,
+  type FieldGeometry,
+} from '../../../src/lib/induction/field/field-geometry.ts';
 import { loadGrid } from '../../../src/lib/induction/field/load-grid.ts';
-import { loadElements, POINTS_PER_ELEMENT, solveLoad, type LoadElements } from '../../../src/lib/induction/field/load-operator.ts';
+import {
+  loadElements,
+  POINTS_PER_ELEMENT,
+  solveLoad,
+  type LoadElements,
+} from '../../../src/lib/induction/field/load-operator.ts';
 
 /** A part with one resistivity and permeability throughout. */
 export interface PlainPart extends PartBody {
@@ -26,7 +35,10 @@ export function roundSection(outsideDiameter: number, wall: number): Section {
 }
 
 export function helix(turns: number, centreRadius: number, pitch: number, section: Section): RingCoil {
-  const rings = Array.from({ length: turns }, (_, k) => ({ radius: centreRadius, z: (k - (turns - 1) / 2) * pitch }));
+  const rings = Array.from({ length: turns }, (_, k) => ({
+    radius: centreRadius,
+    z: (k - (turns - 1) / 2) * pitch,
+  }));
   return { rings, section, turns, pitch };
 }
 
@@ -47,11 +59,21 @@ export function elementsOf(g: FieldGeometry, depth: number, index = 0): LoadElem
   for (let k = load.body.start; k < load.body.start + load.body.count; k++) {
     local[k] = (g.column[k] ?? 0) - load.start;
   }
-  return loadElements(g.boundary, load.body, grid, local, load.count, g.kept.subarray(load.start, load.start + load.count));
+  return loadElements(
+    g.boundary,
+    load.body,
+    grid,
+    local,
+    load.count,
+    g.kept.subarray(load.start, load.start + load.count),
+  );
 }
 
 /** Solves a case with plain numbers for its materials. */
-export function solveCase(c: PlainCase, setting: SolverSetting): FieldSolution & { inductance: number; coil: number; load: number } {
+export function solveCase(
+  c: PlainCase,
+  setting: SolverSetting,
+): FieldSolution & { inductance: number; coil: number; load: number } {
   const parts = c.part === null ? [] : [c.part];
   const g = prepareGeometry(c.coil, parts, resolutionOf(setting, c.coil, parts));
   const block = coilBlock(g, c.copper, c.frequency);

@@ -26,8 +26,12 @@ export interface SolvedCase {
 
 const here = new URL('../reference/', import.meta.url);
 
-export const referenceValues = JSON.parse(readFileSync(new URL('values.json', here), 'utf8')) as ReferenceValue[];
-export const solvedCases = JSON.parse(readFileSync(new URL('finite-elements.json', here), 'utf8')) as SolvedCase[];
+export const referenceValues = JSON.parse(
+  readFileSync(new URL('values.json', here), 'utf8'),
+) as ReferenceValue[];
+export const solvedCases = JSON.parse(
+  readFileSync(new URL('finite-elements.json', here), 'utf8'),
+) as SolvedCase[];
 
 /** Entries whose id starts with one of the prefixes, in file order. */
 export function valuesOf(...prefixes: string[]): ReferenceValue[] {

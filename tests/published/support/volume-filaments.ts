@@ -64,7 +64,9 @@ function carlsonRd(x0: number, y0: number, z0: number): number {
       const ed = ea - 6 * eb;
       const ee = ed + 2 * ec;
       const s =
-        1 + ed * (-3 / 14 + (9 / 88) * ed - (4.5 / 26) * dz * ee) + dz * (ee / 6 + dz * ((-9 / 22) * ec + (3 / 26) * dz * ea));
+        1 +
+        ed * (-3 / 14 + (9 / 88) * ed - (4.5 / 26) * dz * ee) +
+        dz * (ee / 6 + dz * ((-9 / 22) * ec + (3 / 26) * dz * ea));
       return 3 * sum + (factor * s) / (a * Math.sqrt(a));
     }
   }
@@ -165,7 +167,9 @@ export function solveFilaments(cells: Filament[], turns: number, frequency: numb
     for (const [j, q] of cells.entries()) {
       if (j < i) continue;
       const m =
-        i === j ? MU0 * p.r * (Math.log((8 * p.r) / Math.min(p.gmd, p.r)) - 2) : circlesMutual(p.r, q.r, p.z - q.z);
+        i === j
+          ? MU0 * p.r * (Math.log((8 * p.r) / Math.min(p.gmd, p.r)) - 2)
+          : circlesMutual(p.r, q.r, p.z - q.z);
       (im[i] as Float64Array)[j] = omega * m;
       (im[j] as Float64Array)[i] = omega * m;
     }
@@ -187,7 +191,8 @@ export function solveFilaments(cells: Filament[], turns: number, frequency: numb
   }
   let load = 0;
   for (const [i, p] of cells.entries()) {
-    if (p.turn < 0) load += (((xr[i] ?? 0) ** 2 + (xi[i] ?? 0) ** 2) * p.resistivity * 2 * Math.PI * p.r) / p.area;
+    if (p.turn < 0)
+      load += (((xr[i] ?? 0) ** 2 + (xi[i] ?? 0) ** 2) * p.resistivity * 2 * Math.PI * p.r) / p.area;
   }
   return { inductance: vi / omega, resistance: vr, load, unknowns: size };
 }

@@ -222,8 +222,9 @@ export interface FieldSolution {
   partPower: number[];
   /** (Σ powers)/R − 1: resolved when below 1e-4. */
   balance: number;
-  /** K at kept nodes, A/m. */
+  /** K at kept nodes, A/m, and E there, V/m. */
   k: ComplexVector;
+  e: ComplexVector;
 }
 
 /**
@@ -339,7 +340,7 @@ function subtract(a: ComplexVector, b: ComplexVector): void {
   }
 }
 
-/** Power flowing into a body, W for 1 A: Σ Re(E·K*)·w·2πr over its kept nodes with multiplicity. */
+/** Power into a body, W for 1 A: Σ Re(E·K*)·w·2πr over kept nodes with multiplicity; leaves E in `fields`. */
 function bodyPower(
   g: FieldGeometry,
   z: ComplexMatrix,
@@ -347,9 +348,12 @@ function bodyPower(
   start: number,
   count: number,
   own: boolean,
+  fields: ComplexVector,
 ): number {
   const part = { re: k.re.subarray(start, start + count), im: k.im.subarray(start, start + count) };
   const e = timesVector(z, part);
+  fields.re.set(e.re, start);
+  fields.im.set(e.im, start);
   let sum = 0;
   for (let i = 0; i < count; i++) {
     const node = g.kept[start + i] as number;
@@ -369,22 +373,31 @@ function outcome(
   const g = block.geometry;
   const omegaMu = 2 * Math.PI * block.frequency * MU0;
   const count = g.coil.rings.length;
+  const e = { re: new Float64Array(g.kept.length), im: new Float64Array(g.kept.length) };
   const turnVoltage = Array.from({ length: count }, () => ({ re: 0, im: 0 }));
   const turnPower = new Array<number>(count).fill(0);
   for (const [t, turn] of g.turns.entries()) {
     const v = { re: (voltages.re[t] as number) * omegaMu, im: (voltages.im[t] as number) * omegaMu };
-    const p = bodyPower(g, block.turnOperators[t] as ComplexMatrix, k, turn.start, turn.count, turn.folded);
+    const p = bodyPower(
+      g,
+      block.turnOperators[t] as ComplexMatrix,
+      k,
+      turn.start,
+      turn.count,
+      turn.folded,
+      e,
+    );
     for (const at of turn.mirror >= 0 ? [turn.turn, turn.mirror] : [turn.turn]) {
       turnVoltage[at] = v;
       turnPower[at] = p;
     }
   }
   const partPower = g.loads.map((load, q) =>
-    bodyPower(g, z[q] as ComplexMatrix, k, load.start, load.count, true),
+    bodyPower(g, z[q] as ComplexMatrix, k, load.start, load.count, true, e),
   );
   const resistance = turnVoltage.reduce((sum, v) => sum + v.re, 0);
   const reactance = turnVoltage.reduce((sum, v) => sum + v.im, 0);
   const power = turnPower.reduce((sum, p) => sum + p, 0) + partPower.reduce((sum, p) => sum + p, 0);
   if (!Number.isFinite(resistance) || !Number.isFinite(reactance)) throw singular();
-  return { resistance, reactance, turnVoltage, turnPower, partPower, balance: power / resistance - 1, k };
+  return { resistance, reactance, turnVoltage, turnPower, partPower, balance: power / resistance - 1, k, e };
 }
