@@ -36,6 +36,11 @@ export interface Models {
 
 const states: readonly StateName[] = ['cold', 'hot'];
 
+/** Settings per tap, so that the whole ladder stays readable (and its record small). */
+function mostRows(machine: Machine): number {
+  return Math.max(6, Math.floor(64 / (machine.transformer?.ratios.length ?? 1)));
+}
+
 /** Whether the coil current changes the part's permeability in a state. */
 function isMagnetic(geometry: Geometry, state: StateName, targetC: number, startC: number): boolean {
   const law = geometry.material?.magnetisation;
@@ -67,7 +72,7 @@ export function buildModels(
   guess: { inductance: number; frequency: number },
   options: CheckOptions,
 ): Models | null {
-  const bank: Arrangement[] = arrangements(machine.bank);
+  const bank: Arrangement[] = arrangements(machine.bank, mostRows(machine));
   const ask = (state: StateName, frequency: number, current: number, setting: CheckOptions['setting']) =>
     solver.ask({
       coil: geometry.coil,

@@ -19,6 +19,11 @@ export interface CheckOptions {
   shouldStop?: () => boolean;
   /** False leaves the bands out (model error only): nominal figures first. Default true. */
   bands?: boolean;
+  /**
+   * Correction from a measured coil: inductance added in the leads, H, and a factor on the whole coil. Used towards the
+   * operating point of a finished coil only.
+   */
+  measured?: { addedInductance: number; factor: number };
 }
 
 export interface Question {
@@ -55,13 +60,25 @@ export class Solver {
         startTemperatureC: process.startTemperatureC,
         targetTemperatureC: process.targetTemperatureC,
       });
-      return usable(answer) ? answer : null;
+      return usable(answer) ? this.corrected(answer, question) : null;
     } catch (error) {
       if (!(error instanceof InductionInputError)) throw error;
       if (!this.refusals.some((one) => one.code === error.code && one.field === error.field))
         this.refusals.push(error);
       return null;
     }
+  }
+
+  private corrected(answer: ImpedanceAnswer, question: Question): ImpedanceAnswer {
+    const { measured } = this.options;
+    if (!measured) return answer;
+    const inductance =
+      answer.inductance * measured.factor + (question.includeLeads ? measured.addedInductance : 0);
+    return {
+      ...answer,
+      inductance,
+      assumptions: [...answer.assumptions, 'Corrected to the measured inductance.'],
+    };
   }
 }
 

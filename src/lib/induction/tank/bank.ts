@@ -38,7 +38,7 @@ export interface UnitStress {
 /** Film capacitors for heating: 2 to 10·10⁻⁴ between 10 and 200 kHz (from memory; IEC 60110-1 names the test). */
 export const defaultLossTangent = 5e-4;
 /** Rows are limited so that the ladder can be read; the fitted row always stays. */
-const mostArrangements = 48;
+export const mostArrangements = 48;
 
 /** Capacitance of n_p strings of n_s equal units, C·n_p/n_s. */
 export function groupCapacitance(unit: number, units: number, unitsInSeries: number): number {
@@ -53,12 +53,12 @@ function mostUnits(group: BankGroup): number {
 
 /**
  * All bank settings in rising capacitance. Groups: 1 … positions units each in whole strings (0 only while another
- * group is fitted); totals: as listed. More than 48 settings are thinned evenly in ln C; the fitted one stays.
+ * group is fitted); totals: as listed. More than `most` settings are thinned evenly in ln C; the fitted one stays.
  */
-export function arrangements(bank: Bank): Arrangement[] {
+export function arrangements(bank: Bank, most = mostArrangements): Arrangement[] {
   const all = bank.kind === 'totals' ? fromTotals(bank) : fromGroups(bank.groups);
   all.sort((a, b) => a.capacitance - b.capacitance);
-  return thin(all);
+  return thin(all, most);
 }
 
 function fromTotals(bank: Extract<Bank, { kind: 'totals' }>): Arrangement[] {
@@ -146,7 +146,7 @@ export function arrangementOf(groups: readonly BankGroup[], units: number[]): Ar
   };
 }
 
-function thin(rows: Arrangement[]): Arrangement[] {
+function thin(rows: Arrangement[], most: number): Arrangement[] {
   const different: Arrangement[] = [];
   for (const row of rows) {
     const last = different.at(-1);
@@ -155,12 +155,12 @@ function thin(rows: Arrangement[]): Arrangement[] {
       if (row.fitted) different[different.length - 1] = row;
     } else different.push(row);
   }
-  if (different.length <= mostArrangements) return different;
+  if (different.length <= most) return different;
   const low = Math.log(different[0]?.capacitance ?? 1);
   const high = Math.log(different.at(-1)?.capacitance ?? 1);
   const kept = new Set<Arrangement>(different.filter((row) => row.fitted));
-  for (let i = 0; i < mostArrangements; i++) {
-    const wanted = low + ((high - low) * i) / (mostArrangements - 1);
+  for (let i = 0; i < most; i++) {
+    const wanted = low + ((high - low) * i) / Math.max(1, most - 1);
     const best = different.reduce((a, b) =>
       Math.abs(Math.log(b.capacitance) - wanted) < Math.abs(Math.log(a.capacitance) - wanted) ? b : a,
     );

@@ -1,12 +1,12 @@
 import type { Rule } from '../context.ts';
 import { shopTolerances } from '../sensitivity.ts';
-import type { Finding } from '../types.ts';
+import type { Finding, Quantity } from '../types.ts';
 import { commonPractice, finding, quantity } from './finding.ts';
 
 /** assumed-value: an input is not known; the default, its band and how to find out. */
 export const assumedValues: Rule = (context) => {
   const out: Finding[] = context.assumptions.map((a) => {
-    const values = a.value ? { value: a.value, band: quantity(a.band, '1') } : {};
+    const values: Record<string, Quantity> = a.value ? { value: a.value, band: quantity(a.band, '1') } : {};
     return finding({
       code: 'assumed-value',
       severity: a.severity,
