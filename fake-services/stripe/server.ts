@@ -23,6 +23,7 @@ import {
 } from './pages/checkout-page.ts';
 import { htmlPage } from './pages/layout.ts';
 import { openOnboarding, submitOnboarding } from './pages/onboarding-page.ts';
+import { accountLinkRoutes } from './resources/account-links.ts';
 import { accountRoutes } from './resources/accounts.ts';
 import { chargeRoutes } from './resources/charges.ts';
 import { checkoutRoutes } from './resources/checkout-sessions.ts';
@@ -63,6 +64,7 @@ const ROUTES = [
   ...refundRoutes,
   ...disputeRoutes,
   ...accountRoutes,
+  ...accountLinkRoutes,
   ...eventingRoutes,
 ];
 

@@ -1,6 +1,7 @@
 import type { AccountLinkRecord } from '../core/records.ts';
 import type { PaymentService } from '../core/service.ts';
-import { completeOnboarding, findAccount, linkAddresses, linkReturned } from '../resources/accounts.ts';
+import { completeOnboarding, linkAddresses, linkReturned } from '../resources/account-links.ts';
+import { findAccount } from '../resources/accounts.ts';
 import type { PageAnswer } from './checkout-page.ts';
 import { escapeHtml, htmlPage } from './layout.ts';
 

@@ -1,11 +1,10 @@
 /** Connected accounts of v2: recipients of transfers, their onboarding links and their thin events. */
-import { randomBytes } from 'node:crypto';
 import type { Stripe } from 'stripe';
 import { z } from 'zod';
 import { invalidParam, missingV2 } from '../core/errors.ts';
 import { listPageV2 } from '../core/listing.ts';
-import { email, mergeMetadata, metadata, text, url } from '../core/params.ts';
-import type { AccountLinkRecord, AccountRecord } from '../core/records.ts';
+import { email, mergeMetadata, metadata, text } from '../core/params.ts';
+import type { AccountRecord } from '../core/records.ts';
 import { route } from '../core/router.ts';
 import type { PaymentService } from '../core/service.ts';
 
@@ -153,7 +152,12 @@ export function renderAccount(record: AccountRecord, wanted: Include): Stripe.V2
   } satisfies Stripe.V2.Core.Account;
 }
 
-function emit(service: PaymentService, id: string, part: string, data?: Record<string, unknown>): void {
+export function emitAccount(
+  service: PaymentService,
+  id: string,
+  part: string,
+  data?: Record<string, unknown>,
+): void {
   service.emitThin(
     `v2.core.account${part}`,
     { id, type: 'v2.core.account', url: `/v2/core/accounts/${id}` },
@@ -171,8 +175,8 @@ export function setTransfers(
   record.transfers = state;
   const { id } = record.object;
   service.store.tables.accounts.put(id, record);
-  emit(service, id, '[requirements].updated');
-  emit(service, id, '[configuration.recipient].capability_status_updated', {
+  emitAccount(service, id, '[requirements].updated');
+  emitAccount(service, id, '[configuration.recipient].capability_status_updated', {
     updated_capability: 'stripe_balance.stripe_transfers',
   });
 }
@@ -225,7 +229,7 @@ function create(service: PaymentService, params: z.output<typeof createSchema>):
     balances: {},
   };
   service.store.tables.accounts.put(id, record);
-  emit(service, id, '.created');
+  emitAccount(service, id, '.created');
   return renderAccount(record, params.include);
 }
 
@@ -242,79 +246,13 @@ function update(service: PaymentService, params: z.output<typeof createSchema>, 
   if (params.display_name !== undefined) record.object.display_name = params.display_name;
   record.object.metadata = mergeMetadata(record.object.metadata ?? {}, params.metadata);
   service.store.tables.accounts.put(id, record);
-  emit(service, id, '.updated');
+  emitAccount(service, id, '.updated');
   if (wantsTransfers(params) && record.transfers === 'none') {
     if (!record.object.applied_configurations.includes('recipient'))
       record.object.applied_configurations.push('recipient');
     setTransfers(service, record, 'requested');
   }
   return renderAccount(record, params.include);
-}
-
-const linkCase = () =>
-  z.strictObject({
-    collection_options: z
-      .strictObject({
-        fields: z.enum(['currently_due', 'eventually_due']).optional(),
-        future_requirements: z.enum(['include', 'omit']).optional(),
-      })
-      .optional(),
-    refresh_url: url(),
-    return_url: url().optional(),
-  });
-
-const linkSchema = z.strictObject({
-  account: text(),
-  use_case: z.strictObject({
-    type: z.enum(['account_onboarding', 'account_update']),
-    account_onboarding: linkCase().optional(),
-    account_update: linkCase().optional(),
-  }),
-});
-
-function createLink(
-  service: PaymentService,
-  params: z.output<typeof linkSchema>,
-): Stripe.V2.Core.AccountLink {
-  const account = findAccount(service, params.account);
-  if (account.object.closed === true) throw invalidParam('account_closed', 'This account is closed.');
-  const { type } = params.use_case;
-  if (params.use_case[type] === undefined) {
-    throw invalidParam('parameter_missing', `use_case.${type} is required.`, `use_case.${type}`);
-  }
-  // Not from the seed: the address alone opens someone's onboarding.
-  const token = randomBytes(24).toString('base64url');
-  const object = {
-    object: 'v2.core.account_link',
-    account: params.account,
-    created: service.nowIso(),
-    expires_at: new Date((service.now() + service.settings.accountLinkSeconds) * 1000).toISOString(),
-    livemode: false,
-    url: `${service.publicUrl}/onboarding/${token}`,
-    use_case: params.use_case as Stripe.V2.Core.AccountLink.UseCase,
-  } satisfies Stripe.V2.Core.AccountLink;
-  service.store.tables.accountLinks.put(token, { object, token, used: false, done: false });
-  return object;
-}
-
-export function linkAddresses(link: AccountLinkRecord): { refresh: string; back: string | null } {
-  const useCase = link.object.use_case;
-  const chosen = useCase.type === 'account_update' ? useCase.account_update : useCase.account_onboarding;
-  return { refresh: chosen?.refresh_url ?? '/', back: chosen?.return_url ?? null };
-}
-
-/** What the onboarding page's form does: the account gets what it lacked. */
-export function completeOnboarding(service: PaymentService, link: AccountLinkRecord, name: string): void {
-  const record = findAccount(service, link.object.account);
-  record.object.identity = { ...record.object.identity, business_details: { registered_name: name } };
-  service.store.tables.accounts.put(record.object.id, record);
-  emit(service, record.object.id, '[identity].updated');
-  if (record.transfers === 'requested') setTransfers(service, record, 'active');
-  service.store.tables.accountLinks.put(link.token, { ...link, done: true });
-}
-
-export function linkReturned(service: PaymentService, link: AccountLinkRecord): void {
-  service.emitThin('v2.core.account_link.returned', null, { account_id: link.object.account });
 }
 
 export const accountRoutes = [
@@ -331,7 +269,7 @@ export const accountRoutes = [
       const record = findAccount(service, id);
       record.object.closed = true;
       service.store.tables.accounts.put(id, record);
-      emit(service, id, '.closed');
+      emitAccount(service, id, '.closed');
       return renderAccount(record, []);
     },
   ),
@@ -354,5 +292,4 @@ export const accountRoutes = [
         '/v2/core/accounts',
       ),
   ),
-  route('POST', '/v2/core/account_links', linkSchema, createLink),
 ];
