@@ -12,6 +12,7 @@ import {
 } from './milestone-states.ts';
 import type { OrderState } from './order-states.ts';
 import type { OrderTerms } from './order-terms.ts';
+import type { Permission } from './permissions.ts';
 
 export type WaitOwner = 'buyer' | 'fabricator' | 'platform';
 
@@ -422,3 +423,43 @@ export const groundText: Record<Ground, string> = {
   overdue: 'The fabricator is overdue.',
   'may-suspend': 'The milestone was not funded in time.',
 };
+
+/** What a person must be allowed to do to end a wait. */
+export const actOfWait: Record<WaitKind, Permission> = {
+  acknowledge: 'order.acknowledge',
+  fund: 'milestone.fund',
+  'fund-end': 'milestone.fund',
+  'drawing-submit': 'drawing.submit',
+  'drawing-answer': 'drawing.judge',
+  'drawing-end': 'drawing.judge',
+  'build-submit': 'record.enter',
+  'build-end': 'record.enter',
+  'miss-answer': 'record.judge',
+  ship: 'order.ship',
+  receipt: 'receipt.confirm',
+  'receipt-proof': 'receipt.confirm',
+  window: 'milestone.release',
+  release: 'milestone.release',
+  'dispute-answer': 'order.dispute',
+  'dispute-decision': 'admin.decide-dispute',
+  appeal: 'admin.decide-dispute',
+  'appeal-decision': 'admin.decide-dispute',
+};
+
+const nextStep: Partial<Record<WaitKind, WaitKind>> = {
+  fund: 'fund-end',
+  'drawing-answer': 'drawing-end',
+  'build-submit': 'build-end',
+};
+
+/** The waits as people see them: of two steps of one wait the one that is next. */
+export function presentWaits(waits: readonly Wait[], now: number): Wait[] {
+  const passed = (wait: Wait) => wait.dueAt !== null && wait.dueAt <= now;
+  return waits.filter((wait) => {
+    const later = nextStep[wait.kind];
+    if (later && waits.some((other) => other.kind === later)) return !passed(wait);
+    const earlier = Object.entries(nextStep).find(([, step]) => step === wait.kind)?.[0];
+    const first = waits.find((other) => other.kind === earlier && other.subjectId === wait.subjectId);
+    return first === undefined || passed(first);
+  });
+}

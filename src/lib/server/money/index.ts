@@ -25,3 +25,6 @@ export { releaseByWindow, releaseMilestone, releaseObstacle, startRelease } from
 export { paymentService, usePaymentService } from './service.ts';
 export { closePaymentPage, fundingOf, syncSession } from './sessions.ts';
 export { recoverMoney } from './tasks.ts';
+export { ledgerOverview, reconcile, reconcileAsAdmin, type Difference } from './reconcile.ts';
+export { milestonesWithAttention, retryMoney } from './retry.ts';
+export { statementCsv, statementOf, type Statement } from './statement.ts';

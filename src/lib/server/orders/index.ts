@@ -5,6 +5,7 @@ export { approvedDrawing, drawingsOf, judgeDrawing, submitDrawing } from './draw
 export { enterRecord, movePiece, recordsOf, type EnterRecordInput } from './records.ts';
 export { askRemake, concedeMiss } from './misses.ts';
 export {
+  acceptPieces,
   acceptSubmission,
   acceptWork,
   returnSubmission,
@@ -22,6 +23,7 @@ export {
 export { lookAgain, resumeClocks, stopClocks } from './clocks.ts';
 export { orderWaits, waitFacts } from './facts.ts';
 export { closeRequest, finishIfDone, resumeAfterFunding } from './close-order.ts';
+export { listOrders, orderDeskItems, orderFilters, type OrderListItem } from './list-orders.ts';
 export { moveMoney, moveWork, openWhatCanStart, setAttention, windowEnd } from './milestones.ts';
 export {
   companyOf,
