@@ -41,7 +41,7 @@ export function horizontalDimension(
       arrowHead('dimension', b, at, -1, 0, head),
     );
   }
-  const fits = labelLength <= b - a;
+  const fits = labelLength + height * 0.8 <= b - a;
   if (fits) parts.push(text('dimension', (a + b) / 2, at + height * 0.4, label));
   else {
     parts.push(line('dimension', b, at, b + head * 1.8 + labelLength, at));
