@@ -125,15 +125,36 @@ function attachment(fileName: string): string {
   return `attachment; filename="${plain}"; filename*=UTF-8''${exact}`;
 }
 
+interface Connection {
+  server: S3Client;
+  /** Links carry the host they were signed for, so browsers' links need a client of their own. */
+  signer: S3Client;
+  at: (key: string) => { Bucket: string; Key: string };
+}
+
 export type ObjectStore = ReturnType<typeof createObjectStore>;
 
 /** Objects in an S3 bucket. Keys are made by the server; names that people gave are never part of them. */
 export function createObjectStore(config: ObjectStoreConfig) {
   const server = client(config, config.endpoint);
-  // Links carry the host they were signed for, so browsers' links need a client of their own.
   const signer = client(config, config.publicEndpoint);
-  const at = (key: string) => ({ Bucket: config.bucket, Key: keySchema.parse(key) });
+  const connection: Connection = {
+    server,
+    signer,
+    at: (key) => ({ Bucket: config.bucket, Key: keySchema.parse(key) }),
+  };
+  return {
+    ...uploadCalls(connection),
+    ...objectCalls(connection),
+    close: () => {
+      server.destroy();
+      signer.destroy();
+    },
+  };
+}
 
+/** What browsers upload, through signed slots. */
+function uploadCalls({ server, signer, at }: Connection) {
   /** A slot for one PUT of exactly this size and type, up to 16 MB, at most five minutes. */
   async function presignPut(given: {
     key: string;
@@ -210,6 +231,11 @@ export function createObjectStore(config: ObjectStoreConfig) {
     );
   }
 
+  return { presignPut, createMultipart, presignPart, completeMultipart, abortMultipart };
+}
+
+/** What the server itself reads, writes and hands out. */
+function objectCalls({ server, signer, at }: Connection) {
   /** Writes an object the server made itself (papers, drawings it computed). */
   async function put(given: { key: string; contentType: string; body: Uint8Array }): Promise<void> {
     const command = new PutObjectCommand({
@@ -292,22 +318,5 @@ export function createObjectStore(config: ObjectStoreConfig) {
     await call(() => server.send(new DeleteObjectCommand(at(key))));
   }
 
-  return {
-    presignPut,
-    createMultipart,
-    presignPart,
-    completeMultipart,
-    abortMultipart,
-    put,
-    head,
-    getStream,
-    inspect,
-    copy,
-    presignGet,
-    remove,
-    close: () => {
-      server.destroy();
-      signer.destroy();
-    },
-  };
+  return { put, head, getStream, inspect, presignGet, remove };
 }
