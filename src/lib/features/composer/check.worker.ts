@@ -6,15 +6,19 @@ export interface LiveQuestion {
   id: number;
   requirement: Requirement;
 }
-export type LiveAnswer = { id: number; result: CheckResult } | { id: number; problem: string };
+/** Nominal figures come first, the bands a moment later. */
+export type LiveAnswer = { id: number; result: CheckResult; last: boolean } | { id: number; problem: string };
+
+function answer(message: LiveAnswer): void {
+  self.postMessage(message);
+}
 
 self.onmessage = (event: MessageEvent<LiveQuestion>) => {
   const { id, requirement } = event.data;
-  let answer: LiveAnswer;
   try {
-    answer = { id, result: checkRequirement(requirement, { setting: 'preview' }) };
+    answer({ id, result: checkRequirement(requirement, { setting: 'preview', bands: false }), last: false });
+    answer({ id, result: checkRequirement(requirement, { setting: 'preview' }), last: true });
   } catch (error) {
-    answer = { id, problem: error instanceof Error ? error.message : String(error) };
+    answer({ id, problem: error instanceof Error ? error.message : String(error) });
   }
-  self.postMessage(answer);
 };

@@ -72,14 +72,16 @@ export class LiveCheck {
   #answered(answer: LiveAnswer): void {
     if (answer.id !== this.#running?.id) return;
     const { text } = this.#running;
-    this.#running = undefined;
+    if (!('result' in answer) || answer.last) this.#running = undefined;
     if ('result' in answer) {
       this.result = answer.result;
       this.resultText = text;
       this.problem = null;
     } else this.problem = answer.problem;
+    // Nominal figures are enough to go on to a newer question.
+    if (this.#waiting && this.#running) this.#drop();
     if (this.#waiting) void this.#next();
-    else this.busy = false;
+    else if (!this.#running) this.busy = false;
   }
 
   close(): void {

@@ -17,15 +17,21 @@ export interface FigureGroup {
 }
 
 const limiterText: Record<LadderRow['hot']['limitedBy'], string> = {
-  'rated-power': 'limited by the rated power',
-  voltage: 'limited by the inverter’s voltage',
-  current: 'limited by the inverter’s current',
-  bank: 'limited by the capacitor bank',
-  coil: 'limited by the coil',
+  'rated-power': 'rated power',
+  voltage: 'inverter voltage',
+  current: 'inverter current',
+  bank: 'capacitor bank',
+  coil: 'coil',
 };
 
+/** What keeps the power of a row from being higher. */
 export function limiterOf(row: LadderRow['hot']): string {
   return limiterText[row.limitedBy];
+}
+
+/** The rows worth reading first: fitted, advised, and those whose frequency lies in the supply's range. */
+export function nearRows(rows: readonly LadderRow[]): LadderRow[] {
+  return rows.filter((row) => row.fitted || row.advised || row.fits || (row.cold.inBand && row.hot.inBand));
 }
 
 /** The row that is fitted now, or the advised one where none is. */
@@ -40,7 +46,7 @@ function contributors(figure: Figure): string {
   return names.length === 0 ? '' : `Band mostly from ${names.join(', ')}.`;
 }
 
-function lines(entries: readonly Entry[], unitSet: UnitSet): FigureLine[] {
+function lines(entries: readonly Entry[], unitSet: UnitSet, withContributors = true): FigureLine[] {
   return entries.flatMap(([name, figure, note = '', dimension]) => {
     if (!figure) return [];
     const shown = formatFigure(figure, unitSet, { dimension });
@@ -49,7 +55,7 @@ function lines(entries: readonly Entry[], unitSet: UnitSet): FigureLine[] {
         name,
         value: shown.value,
         range: figure.high > figure.low ? shown.range : '',
-        note: [note, contributors(figure)].filter(Boolean).join(' '),
+        note: [note, withContributors ? contributors(figure) : ''].filter(Boolean).join(' '),
       },
     ];
   });
@@ -58,6 +64,7 @@ function lines(entries: readonly Entry[], unitSet: UnitSet): FigureLine[] {
 /** The handful of figures that decide: they stand first and alone. */
 export function headlines(result: CheckResult, unitSet: UnitSet): FigureLine[] {
   const { tank, cold, hot, bare } = result;
+  const limit = fittedRow(result)?.hot;
   return lines(
     [
       [
@@ -68,7 +75,7 @@ export function headlines(result: CheckResult, unitSet: UnitSet): FigureLine[] {
       [
         'Deliverable power',
         tank?.deliverablePower,
-        fittedRow(result) ? limiterOf(fittedRow(result)!.hot) : '',
+        limit === undefined ? '' : `limited by the ${limiterOf(limit)}`,
       ],
       ['Efficiency of the coil, hot', hot?.efficiency ?? cold?.efficiency, '', 'fraction'],
       ['Time to target', result.heating?.timeAtDeliverablePower],
@@ -76,6 +83,7 @@ export function headlines(result: CheckResult, unitSet: UnitSet): FigureLine[] {
       ['Water flow', result.water?.flow],
     ],
     unitSet,
+    false,
   );
 }
 

@@ -1,6 +1,6 @@
 /** A requirement as names and values, by the same table of fields that the form is made of. */
 import type { Requirement } from '$lib/induction/check/types.ts';
-import type { UnitSet } from '$lib/induction/units/dimensions.ts';
+import { dimensionTable, type UnitSet } from '$lib/induction/units/dimensions.ts';
 import type { FieldSpec, Values } from '$lib/schemas/forms/field-spec.ts';
 import {
   requirementValues,
@@ -26,12 +26,16 @@ const emptyText: Record<FieldSpec['empty'], string> = {
   proposed: 'proposed by the checker',
 };
 
-function shown(field: FieldSpec, values: Values): string {
+function shown(field: FieldSpec, values: Values, unitSet: UnitSet): string {
   const text = (values[field.path] ?? '').trim();
   if (field.kind === 'flag') return text === 'yes' ? 'yes' : 'no';
   if (text === '') return emptyText[field.empty];
   if (field.kind === 'choice') return field.options.find((option) => option.value === text)?.label ?? text;
   if (field.kind === 'plain' && field.unit) return `${text} ${field.unit}`;
+  if (field.kind === 'quantity') {
+    const unit = dimensionTable[field.dimension].field[unitSet];
+    return unit === '°' ? `${text}${unit}` : `${text} ${unit}`.trimEnd();
+  }
   return text;
 }
 
@@ -48,7 +52,7 @@ export function requirementSections(requirement: Requirement, unitSet: UnitSet):
         items: group.fields
           .filter((field) => !field.when || field.when(values))
           .filter((field) => field.empty !== 'none' || (values[field.path] ?? '') !== '')
-          .map((field) => ({ term: field.label, value: shown(field, values), path: field.path })),
+          .map((field) => ({ term: field.label, value: shown(field, values, unitSet), path: field.path })),
       }))
       .filter((group) => group.items.length > 0),
   }));

@@ -112,12 +112,20 @@ export function emptyValue(field: FieldSpec): unknown {
   }
 }
 
+/** The number alone where the text is in the field's own unit: the unit stands beside the field. */
+function bare(text: string, dimension: Dimension, unitSet: UnitSet): string {
+  const unit = dimensionTable[dimension].field[unitSet];
+  return unit !== '' && text.endsWith(unit) ? text.slice(0, -unit.length).trimEnd() : text;
+}
+
 /** A stored value as the text of its field. */
 export function fieldText(field: FieldSpec, value: unknown, unitSet: UnitSet): string {
   if (value === null || value === undefined) return '';
   switch (field.kind) {
     case 'quantity':
-      return typeof value === 'number' ? formatField(value, field.dimension, unitSet) : '';
+      return typeof value === 'number'
+        ? bare(formatField(value, field.dimension, unitSet), field.dimension, unitSet)
+        : '';
     case 'plain':
       return typeof value === 'number' ? String(Number((value / field.factor).toPrecision(8))) : '';
     case 'flag':
@@ -164,5 +172,5 @@ export function textInSet(text: string, dimension: Dimension, from: UnitSet, to:
   if (!number.ok || number.rest !== '') return text;
   if (dimensionTable[dimension].field[from] === dimensionTable[dimension].field[to]) return text;
   const parsed = parseQuantity(text, dimension, from);
-  return parsed.ok ? formatField(parsed.value, dimension, to) : text;
+  return parsed.ok ? bare(formatField(parsed.value, dimension, to), dimension, to) : text;
 }
