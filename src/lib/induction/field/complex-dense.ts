@@ -17,52 +17,102 @@ export interface ComplexFactors {
   pivot: Int32Array;
 }
 
+/** Columns eliminated together: a row stays in cache while it takes this many updates. */
+const PANEL = 24;
+
 /**
- * LU factorisation with partial pivoting, in place. The inner loop runs along rows: two loads, two
- * stores, no allocation. Returns null when the matrix is singular to working precision.
+ * LU factorisation with partial pivoting, in place, a panel of columns at a time; the inner loop takes two
+ * updates per pass over a row and allocates nothing. Returns null when the matrix is singular to working
+ * precision.
  */
 export function factorise(a: ComplexMatrix): ComplexFactors | null {
   const n = a.rows;
   const { re, im } = a;
   const pivot = new Int32Array(n);
-  for (let k = 0; k < n; k++) {
-    let best = -1;
-    let row = k;
-    for (let i = k; i < n; i++) {
-      const xr = re[i * n + k] as number;
-      const xi = im[i * n + k] as number;
-      const size = xr * xr + xi * xi;
-      if (size > best) {
-        best = size;
-        row = i;
+  for (let k0 = 0; k0 < n; k0 += PANEL) {
+    const k1 = Math.min(n, k0 + PANEL);
+    for (let k = k0; k < k1; k++) {
+      let best = -1;
+      let row = k;
+      for (let i = k; i < n; i++) {
+        const xr = re[i * n + k] as number;
+        const xi = im[i * n + k] as number;
+        const size = xr * xr + xi * xi;
+        if (size > best) {
+          best = size;
+          row = i;
+        }
+      }
+      if (!(best > 0) || !Number.isFinite(best)) return null;
+      pivot[k] = row;
+      if (row !== k) swapRows(re, im, n, k, row);
+      const kk = k * n + k;
+      const pr = (re[kk] as number) / best;
+      const pi = -(im[kk] as number) / best;
+      for (let i = k + 1; i < n; i++) {
+        const ik = i * n + k;
+        const xr = re[ik] as number;
+        const xi = im[ik] as number;
+        const fr = xr * pr - xi * pi;
+        const fi = xr * pi + xi * pr;
+        re[ik] = fr;
+        im[ik] = fi;
+        const rowI = i * n;
+        const rowK = k * n;
+        for (let j = k + 1; j < k1; j++) {
+          const yr = re[rowK + j] as number;
+          const yi = im[rowK + j] as number;
+          re[rowI + j] = (re[rowI + j] as number) - (fr * yr - fi * yi);
+          im[rowI + j] = (im[rowI + j] as number) - (fr * yi + fi * yr);
+        }
       }
     }
-    if (!(best > 0) || !Number.isFinite(best)) return null;
-    pivot[k] = row;
-    if (row !== k) swapRows(re, im, n, k, row);
-    const kk = k * n + k;
-    const pr = (re[kk] as number) / best;
-    const pi = -(im[kk] as number) / best;
-    for (let i = k + 1; i < n; i++) {
-      const ik = i * n + k;
-      const xr = re[ik] as number;
-      const xi = im[ik] as number;
-      if (xr === 0 && xi === 0) continue;
-      const fr = xr * pr - xi * pi;
-      const fi = xr * pi + xi * pr;
-      re[ik] = fr;
-      im[ik] = fi;
-      const rowI = i * n;
-      const rowK = k * n;
-      for (let j = k + 1; j < n; j++) {
-        const yr = re[rowK + j] as number;
-        const yi = im[rowK + j] as number;
-        re[rowI + j] = (re[rowI + j] as number) - (fr * yr - fi * yi);
-        im[rowI + j] = (im[rowI + j] as number) - (fr * yi + fi * yr);
-      }
-    }
+    if (k1 === n) break;
+    for (let i = k0 + 1; i < k1; i++) eliminateRow(re, im, n, i, k0, i, k1);
+    for (let i = k1; i < n; i++) eliminateRow(re, im, n, i, k0, k1, k1);
   }
   return { n, lu: a, pivot };
+}
+
+/** Row i −= Σ over k from `from` to `to` of L_ik·(row k), columns `first` … n − 1; two k per pass. */
+function eliminateRow(
+  re: Float64Array,
+  im: Float64Array,
+  n: number,
+  i: number,
+  from: number,
+  to: number,
+  first: number,
+): void {
+  const row = i * n;
+  let k = from;
+  for (; k + 1 < to; k += 2) {
+    const ar = re[row + k] as number;
+    const ai = im[row + k] as number;
+    const br = re[row + k + 1] as number;
+    const bi = im[row + k + 1] as number;
+    const p = k * n;
+    const q = p + n;
+    for (let j = first; j < n; j++) {
+      const xr = re[p + j] as number;
+      const xi = im[p + j] as number;
+      const yr = re[q + j] as number;
+      const yi = im[q + j] as number;
+      re[row + j] = (re[row + j] as number) - (ar * xr - ai * xi) - (br * yr - bi * yi);
+      im[row + j] = (im[row + j] as number) - (ar * xi + ai * xr) - (br * yi + bi * yr);
+    }
+  }
+  if (k < to) {
+    const ar = re[row + k] as number;
+    const ai = im[row + k] as number;
+    const p = k * n;
+    for (let j = first; j < n; j++) {
+      const xr = re[p + j] as number;
+      const xi = im[p + j] as number;
+      re[row + j] = (re[row + j] as number) - (ar * xr - ai * xi);
+      im[row + j] = (im[row + j] as number) - (ar * xi + ai * xr);
+    }
+  }
 }
 
 function swapRows(re: Float64Array, im: Float64Array, cols: number, a: number, b: number): void {
@@ -136,12 +186,12 @@ export function addProduct(out: ComplexMatrix, a: ComplexMatrix, b: ComplexMatri
     for (let k = 0; k < a.cols; k++) {
       const fr = factor * (a.re[i * a.cols + k] as number);
       const fi = factor * (a.im[i * a.cols + k] as number);
-      subtractRow2(out, b, i * out.cols, k * m, m, fr, fi);
+      addRow(out, b, i * out.cols, k * m, m, fr, fi);
     }
   }
 }
 
-function subtractRow2(
+function addRow(
   out: ComplexMatrix,
   b: ComplexMatrix,
   target: number,
