@@ -193,7 +193,9 @@ function gridModel(
   ask: AskAt,
 ): CoilModel | null {
   const ratio = span.frequency[1] / span.frequency[0];
-  const full = ratio < 1.3 ? 3 : ratio < 3 ? 4 : 5;
+  const plain = ratio < 1.3 ? 3 : ratio < 2 ? 4 : ratio < 3 ? 5 : 6;
+  // Each point of saturating steel costs ten of the others, and its own error is far above that of one point less.
+  const full = how.magnetic ? Math.min(4, plain) : plain;
   const light = how.setting === 'preview';
   const frequencies = chebyshevPoints(span.frequency[0], span.frequency[1], light ? 3 : full);
   const exact = solveGrid(frequencies, [rough.current], (f, i) => ask(f, i, how.setting));
