@@ -241,6 +241,16 @@ describe('the store itself', () => {
     await expect(store.getStream('acme/2026/short')).rejects.toMatchObject({ kind: 'missing' });
   });
 
+  it('copies an object under another key, with the type it is given', async () => {
+    await store.put({ key: 'acme/2026/original', contentType: 'text/csv', body: Buffer.from('copied') });
+    await store.copy({ from: 'acme/2026/original', to: 'acme/2026/copy', contentType: 'application/pdf' });
+    expect(await store.head('acme/2026/copy')).toMatchObject({
+      sizeBytes: 6,
+      contentType: 'application/pdf',
+    });
+    expect(await store.head('acme/2026/original')).toMatchObject({ contentType: 'text/csv' });
+  });
+
   it('is tried again when it is in trouble, and reported when that does not help', async () => {
     running.failNext(1);
     await store.put({ key: 'acme/2026/retry', contentType: 'text/csv', body: Buffer.from('x') });

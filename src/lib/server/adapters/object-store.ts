@@ -126,6 +126,7 @@ function attachment(fileName: string): string {
 }
 
 interface Connection {
+  bucket: string;
   server: S3Client;
   /** Links carry the host they were signed for, so browsers' links need a client of their own. */
   signer: S3Client;
@@ -139,6 +140,7 @@ export function createObjectStore(config: ObjectStoreConfig) {
   const server = client(config, config.endpoint);
   const signer = client(config, config.publicEndpoint);
   const connection: Connection = {
+    bucket: config.bucket,
     server,
     signer,
     at: (key) => ({ Bucket: config.bucket, Key: keySchema.parse(key) }),
@@ -235,7 +237,7 @@ function uploadCalls({ server, signer, at }: Connection) {
 }
 
 /** What the server itself reads, writes and hands out. */
-function objectCalls({ server, signer, at }: Connection) {
+function objectCalls({ bucket, server, signer, at }: Connection) {
   /** Writes an object the server made itself (papers, drawings it computed). */
   async function put(given: { key: string; contentType: string; body: Uint8Array }): Promise<void> {
     const command = new PutObjectCommand({
@@ -306,7 +308,7 @@ function objectCalls({ server, signer, at }: Connection) {
   async function copy(given: { from: string; to: string; contentType: string }): Promise<void> {
     const command = new CopyObjectCommand({
       ...at(given.to),
-      CopySource: `${config.bucket}/${keySchema.parse(given.from)}`,
+      CopySource: `${bucket}/${keySchema.parse(given.from)}`,
       MetadataDirective: 'REPLACE',
       ContentType: given.contentType,
     });
@@ -318,5 +320,5 @@ function objectCalls({ server, signer, at }: Connection) {
     await call(() => server.send(new DeleteObjectCommand(at(key))));
   }
 
-  return { put, head, getStream, inspect, presignGet, remove };
+  return { put, head, getStream, inspect, presignGet, copy, remove };
 }
