@@ -1,6 +1,6 @@
-import type { Actor } from '../../domain/actor.ts';
-import { can } from '../../domain/policy.ts';
-import { roleText } from '../../domain/roles.ts';
+import type { Actor } from './actor.ts';
+import { can } from './policy.ts';
+import { roleText } from './roles.ts';
 
 interface Item {
   label: string;
