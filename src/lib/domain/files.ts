@@ -155,3 +155,12 @@ export function cleanFileName(name: string): string {
     .replace(/\s+/g, ' ')
     .trim();
 }
+
+/** Papers that a company keeps, and names when it asks to be verified. */
+export const companyDocumentKindText = {
+  registration: 'Company registration',
+  insurance: 'Insurance',
+  certificate: 'Certificate (quality system, calibration)',
+  equipment: 'List of equipment',
+  other: 'Other paper',
+} as const;

@@ -27,14 +27,3 @@ export const byHandInput = z.object({ id: z.uuid(), event: z.enum(handEvents) })
 export function queryOf(params: URLSearchParams, names: readonly string[]): Record<string, string | null> {
   return Object.fromEntries(names.map((name) => [name, params.get(name) || null]));
 }
-
-/** The same list with another cursor. */
-export function withCursor(
-  path: string,
-  filter: Record<string, string | null>,
-  after: string | null,
-): string {
-  const query = new URLSearchParams();
-  for (const [name, value] of Object.entries({ ...filter, after })) if (value) query.set(name, value);
-  return query.size > 0 ? `${path}?${query}` : path;
-}

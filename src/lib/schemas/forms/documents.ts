@@ -1,12 +1,5 @@
 import { z } from 'zod';
-
-export const companyDocumentKindText = {
-  registration: 'Company registration',
-  insurance: 'Insurance',
-  certificate: 'Certificate (quality system, calibration)',
-  equipment: 'List of equipment',
-  other: 'Other paper',
-} as const;
+import { companyDocumentKindText } from '../../domain/files.ts';
 
 const kinds = Object.keys(companyDocumentKindText) as (keyof typeof companyDocumentKindText)[];
 
