@@ -301,7 +301,7 @@ async function underWay(world: SeedWorld, scene: Scene) {
 
 /** Requests in the states that come before an award, and what is without one. */
 async function requests(world: SeedWorld, scene: Scene) {
-  const { millrace, kestrelmoor, fennick, copperfold, tallow } = scene;
+  const { kestrelmoor, fennick, copperfold, tallow } = scene;
   await world.daysAgo(6);
   const closing = await step.post(world, kestrelmoor, {
     ...plans.tip(scene, 'Tip brazing coil for the new bench'),
