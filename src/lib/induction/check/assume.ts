@@ -1,5 +1,4 @@
 /** Stated defaults for what is not known of the machine, each with a wide band and a way to find out. */
-import { defaultLossTangent } from '../tank/bank.ts';
 import type { Connection, TankCircuit } from '../tank/circuit.ts';
 import type { SupplyLimits } from '../tank/deliverable.ts';
 import { pushPullTankVoltage } from '../tank/push-pull.ts';
@@ -36,6 +35,8 @@ export interface AssumedMachine {
   fittedTap: number | null;
   stray: number;
   sources: CircuitSource[];
+  /** Half band of the deliverable power, as a fraction, where tank kind or rated power is assumed. */
+  powerBand: number;
   assumptions: Assumption[];
 }
 
@@ -116,6 +117,12 @@ export function assumeMachine(
     fittedTap: machine.transformer ? machine.transformer.fittedTap : null,
     stray: machine.fixed.strayCapacitance ?? 0,
     sources,
+    powerBand: Math.hypot(
+      0,
+      ...assumptions
+        .filter((a) => a.field === 'machine.tank' || a.field === 'machine.supply.ratedPower')
+        .map((a) => a.band),
+    ),
     assumptions,
   };
 }
@@ -277,5 +284,3 @@ function transformerOf(
   }
   return value;
 }
-
-export { defaultLossTangent };

@@ -181,6 +181,18 @@ export function inRange(
   );
 }
 
+/** What an assumed supply adds to the band of the deliverable power. */
+export const unknownSupply = (assumed: Pick<AssumedMachine, 'powerBand'>, power: number): Effect[] =>
+  assumed.powerBand > 0
+    ? [
+        {
+          name: 'supply not known',
+          variation: { value: assumed.powerBand, unit: '1' },
+          change: power * assumed.powerBand,
+        },
+      ]
+    : [];
+
 /** Power that reaches the part at a point, W. */
 export const partPower: Reading = (p) => p.state.coilCurrent ** 2 * p.point.loadResistance;
 
@@ -206,7 +218,7 @@ function ladderState(
     p.deliverable.power,
     'W',
     'least of rated power, voltage limit and current limit into the reflected load',
-    effects((x) => x.deliverable.power),
+    [...effects((x) => x.deliverable.power), ...unknownSupply(assumed, p.deliverable.power)],
     { least: 0 },
   );
   return {

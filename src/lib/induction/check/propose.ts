@@ -63,7 +63,8 @@ const mostChecks = { plain: 10, magnetic: 5 };
  */
 export function proposeCandidates(requirement: Requirement, options: ProposeOptions = {}): Proposals {
   const limit = Math.min(5, Math.max(1, options.limit ?? 5));
-  const variants = rank(variantsOf(requirement, options));
+  const all = variantsOf(requirement, options);
+  const variants = rank(all);
   const magnetic = resolveGeometry(requirement).material?.magnetisation != null;
   const wanted = variants.slice(0, magnetic ? mostChecks.magnetic : mostChecks.plain);
   const sound: Candidate[] = [];
@@ -80,7 +81,10 @@ export function proposeCandidates(requirement: Requirement, options: ProposeOpti
   if (sound.length > 0) return { candidates: spread(sound, limit), obstacles: [] };
   return {
     candidates: [],
-    obstacles: variants.length > 0 ? mostFrequent(blockers) : standingInTheWay(requirement),
+    obstacles:
+      variants.length > 0
+        ? mostFrequent(blockers)
+        : standingInTheWay(all[Math.floor(all.length / 2)]?.requirement ?? requirement),
   };
 }
 

@@ -4,6 +4,7 @@ import { figure } from './figure.ts';
 import {
   movedReadings,
   partPower,
+  unknownSupply,
   type Reading,
   type SolvedRow,
   type StateModel,
@@ -66,10 +67,12 @@ export function tankFigures(
         : of('V', 'circuit, turns up to the tap', (p) => p.state.coilVoltage * tapShare, atPower),
     bankCurrent: of('A', 'circuit', (p) => p.state.bankCurrent, atPower),
     reactivePower: of('var', 'circuit', (p) => p.state.reactivePower, atPower),
-    deliverablePower: of(
+    deliverablePower: figure(
+      hot.deliverable.power,
       'W',
       'least of rated power, voltage limit and current limit',
-      (p) => p.deliverable.power,
+      [...effects((p) => p.deliverable.power), ...unknownSupply(assumed, hot.deliverable.power)],
+      { least: 0 },
     ),
     bankLoss: of('W', 'tan δ of the units', (p) => p.state.loss.bank, atPower),
     transformerLoss: of('W', 'winding resistance', (p) => p.state.loss.transformer, atPower),

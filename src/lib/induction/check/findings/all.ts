@@ -24,7 +24,7 @@ import {
   touchingTurns,
 } from './geometry.ts';
 import { loadMismatch, lowEfficiency, powerShort, qOutOfRange, timeShort } from './power.ts';
-import { chokeSaturates, deviceVoltage, startUp } from './push-pull.ts';
+import { chokeSaturates, deviceVoltage, pushPullOverload, startUp } from './push-pull.ts';
 import { fieldAtOperator, fixtureOverheats, metalInField } from './surroundings.ts';
 import {
   leadsDominate,
@@ -35,7 +35,14 @@ import {
   workingPressureHigh,
 } from './tube.ts';
 import { unitDoubts } from './unit-doubt.ts';
-import { belowInterlock, waterFast, waterHot, waterLaminar, waterShort } from './water.ts';
+import {
+  belowInterlock,
+  waterFast,
+  waterHot,
+  waterLaminar,
+  waterPressureShort,
+  waterShort,
+} from './water.ts';
 
 export const rules: readonly Rule[] = [
   impossibleDimensions,
@@ -71,6 +78,7 @@ export const rules: readonly Rule[] = [
   missingConnection,
   missingHanding,
   waterShort,
+  waterPressureShort,
   waterHot,
   waterFast,
   waterLaminar,
@@ -87,6 +95,7 @@ export const rules: readonly Rule[] = [
   deviceVoltage,
   chokeSaturates,
   startUp,
+  pushPullOverload,
   assumedValues,
 ];
 

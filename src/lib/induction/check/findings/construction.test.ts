@@ -25,7 +25,14 @@ import {
   workingPressureHigh,
 } from './tube.ts';
 import { mistakenFactor, unitDoubts } from './unit-doubt.ts';
-import { belowInterlock, waterFast, waterHot, waterLaminar, waterShort } from './water.ts';
+import {
+  belowInterlock,
+  waterFast,
+  waterHot,
+  waterLaminar,
+  waterPressureShort,
+  waterShort,
+} from './water.ts';
 
 const base = baseContext;
 const at = (values: Record<string, unknown>) => () => changed(base(), values);
@@ -237,6 +244,13 @@ const cases: RuleCase[] = [
     raises: at({ 'water.outletTemperature.value': 99 }),
     not: at({ 'water.outletTemperature.value': 45 }),
     severity: 'blocker',
+  },
+  {
+    code: 'water-short',
+    rule: waterPressureShort,
+    raises: at({ 'water.pressureDrop.value': 5e5 }),
+    not: at({ 'water.pressureDrop.value': 1e5 }),
+    severity: 'caution',
   },
   {
     code: 'water-hot',

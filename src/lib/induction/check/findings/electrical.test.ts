@@ -1,14 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { materialOf } from '../../materials/material-of.ts';
 import { assumedValues } from './assumptions.ts';
-import {
-  baseContext,
-  changed,
-  examined,
-  fittedIndex,
-  plainRequirement,
-  type RuleCase,
-} from './case-context.ts';
+import { baseContext, changed, examined, fittedIndex, type RuleCase } from './case-context.ts';
 import {
   capacitorLimits,
   coilCurrent,
@@ -19,7 +12,7 @@ import {
 import { curieCrossing, frequencyForDepth, nearMelting, partTooThin, surfaceOverheats } from './depth.ts';
 import { frequencyBand, noRowFits } from './frequency.ts';
 import { loadMismatch, lowEfficiency, powerShort, qOutOfRange, timeShort } from './power.ts';
-import { chokeSaturates, deviceVoltage, startUp } from './push-pull.ts';
+import { chokeSaturates, deviceVoltage, pushPullOverload, startUp } from './push-pull.ts';
 
 const row = (path: string) => `ladder.${fittedIndex()}.${path}`;
 const base = baseContext;
@@ -222,6 +215,13 @@ const cases: RuleCase[] = [
     rule: chokeSaturates,
     raises: pushPull({ dcVoltage: 48, chokeSaturationCurrent: 20, chokeInductance: 1e-4 }),
     not: pushPull({ dcVoltage: 48, chokeSaturationCurrent: 1e5, chokeInductance: 1e-4 }),
+  },
+  {
+    code: 'load-mismatch',
+    rule: pushPullOverload,
+    raises: pushPull({ dcVoltage: 48, ratedPower: 1000 }),
+    not: pushPull({ dcVoltage: 48, ratedPower: 1e7 }),
+    severity: 'caution',
   },
   { code: 'start-up-caution', rule: startUp, raises: pushPull({}), not: () => base() },
 ];

@@ -78,3 +78,33 @@ export const startUp: Rule = (context) =>
         }),
       ]
     : [];
+
+/** load-mismatch of a self-resonant stage: it draws what its DC voltage puts over the tank and cannot hold back. */
+export const pushPullOverload: Rule = (context) => {
+  const { ratedPower, dcVoltage } = context.requirement.machine.supply;
+  const points = context.fittedRow?.points;
+  if (!isPushPull(context) || !points || ratedPower === null || dcVoltage === null) return [];
+  const drawn = Math.max(points.cold.deliverable.byVoltage, points.hot.deliverable.byVoltage);
+  if (drawn <= ratedPower) return [];
+  return [
+    finding({
+      code: 'load-mismatch',
+      severity: 'caution',
+      subject: 'machine.supply.dcVoltage',
+      figure: quantity(drawn, 'W'),
+      limit: quantity(ratedPower, 'W'),
+      template:
+        'At {dc} the stage draws {figure} from its supply, rated {limit}: it cannot hold itself back.',
+      values: { dc: quantity(dcVoltage, 'V') },
+      remedy: 'Lower the DC voltage (half the power needs 1/√2 of it), or couple the part less closely.',
+      fixes: [
+        {
+          label: 'DC voltage for the rated power',
+          field: 'machine.supply.dcVoltage',
+          value: Number((dcVoltage * Math.sqrt(ratedPower / drawn)).toPrecision(3)),
+        },
+      ],
+      source: 'tank voltage π/√2 times the DC supply',
+    }),
+  ];
+};

@@ -38,6 +38,31 @@ export const waterShort: Rule = (context) => {
   ];
 };
 
+/** water-short: the flow entered needs more pressure than the machine has. */
+export const waterPressureShort: Rule = (context) => {
+  const { water } = context;
+  const { flow, supplyPressure, returnPressure } = context.requirement.machine.water;
+  if (!water || flow === null || supplyPressure === null || returnPressure === null) return [];
+  const available = supplyPressure - returnPressure;
+  const needed = water.pressureDrop;
+  if (needed.value <= available) return [];
+  return [
+    finding({
+      code: 'water-short',
+      severity: 'caution',
+      safety: true,
+      subject: 'machine.water.flow',
+      figure: quantity(needed.value, 'Pa'),
+      limit: quantity(available, 'Pa'),
+      template: 'The flow of {flow} needs {figure} through this coil; the machine has {limit}.',
+      values: { flow: quantity(flow, 'm3/s') },
+      remedy:
+        'More circuits or a larger bore let the flow through; leave the flow empty to have it computed.',
+      source: needed.method,
+    }),
+  ];
+};
+
 /** water-hot: the wall of the bore is hot enough for scale and vapour. */
 export const waterHot: Rule = (context) => {
   const wall = context.water?.wallTemperature.value;
