@@ -44,10 +44,13 @@ export async function trySignIn(origin: string, signIn: SignIn): Promise<void> {
   await answer.text();
   const cookies = answer.headers.getSetCookie().map((cookie) => cookie.split(';')[0] ?? '');
   const session = cookies.find((cookie) => cookie.startsWith('__Host-coilyard=') && cookie.length > 30);
-  if (answer.status !== 303 || session === undefined) {
+  const next = new URL(answer.headers.get('location') ?? '/desk', origin);
+  // Who has a second factor is asked for it first; their session comes after.
+  const secondFactor = next.pathname === '/two-factor' && cookies.length > 0;
+  if (answer.status !== 303 || (session === undefined && !secondFactor)) {
     throw new Error(`Signing in as ${signIn.role} was answered ${String(answer.status)} and no session.`);
   }
-  const desk = await fetch(new URL(answer.headers.get('location') ?? '/desk', origin), {
+  const desk = await fetch(next, {
     headers: { cookie: cookies.join('; ') },
     redirect: 'manual',
   });
