@@ -8,8 +8,8 @@ import type { SolveOutcome, SolveTask } from './solve-thread.ts';
 
 /** Waiting tasks beyond this are refused at once instead of piling up. */
 const mostWaiting = 200;
-/** One check takes well under a second; this only stops what has gone wrong. */
-const timeLimitMs = 20_000;
+/** One check takes a few seconds of one core; this only stops what has gone wrong, on a busy server too. */
+const timeLimitMs = 60_000;
 
 let pool: Piscina<SolveTask, SolveOutcome> | undefined;
 
