@@ -17,9 +17,11 @@ export interface LoadElements {
   grid: LoadGrid;
   nr: number;
   nz: number;
-  /** Free nodes (axis nodes are dropped) and half bandwidth of their matrix. */
+  /** Free nodes (axis nodes are dropped); those on the surface come last, from `surface` on. */
   nodes: number;
-  halfBandwidth: number;
+  surface: number;
+  /** First column of each row of their matrix. */
+  first: Int32Array;
   /** Free-node number at tensor place (ir, iz), −1 on the axis; stride of the tensor is 2·nr + 1. */
   index: Int32Array;
   /**
@@ -83,23 +85,30 @@ export function loadElements(
     );
   }
   const index = new Int32Array(nnr * nnz).fill(-1);
-  // Numbered along the shorter direction first, which keeps the band narrow.
+  const onSurface = (ir: number, iz: number) =>
+    ir === nnr - 1 || (ir === 0 && axis === 0) || iz === nnz - 1 || (iz === 0 && !grid.half);
+  // The inside along the shorter direction first, which keeps the profile narrow; the surface last, so that
+  // its operator falls out of the elimination without solving for the inside.
   const radialFirst = nnr <= nnz;
   let count = 0;
-  for (let p = 0; p < (radialFirst ? nnz : nnr); p++) {
-    for (let q = 0; q < (radialFirst ? nnr : nnz); q++) {
-      const ir = radialFirst ? q : p;
-      const iz = radialFirst ? p : q;
-      if (ir >= axis) index[iz * nnr + ir] = count++;
+  let surface = 0;
+  for (const wanted of [false, true]) {
+    if (wanted) surface = count;
+    for (let p = 0; p < (radialFirst ? nnz : nnr); p++) {
+      for (let q = 0; q < (radialFirst ? nnr : nnz); q++) {
+        const ir = radialFirst ? q : p;
+        const iz = radialFirst ? p : q;
+        if (ir >= axis && onSurface(ir, iz) === wanted) index[iz * nnr + ir] = count++;
+      }
     }
   }
-  const halfBandwidth = radialFirst ? 2 * (nnr - axis) + 2 : 2 * nnz + 2;
   const elements: LoadElements = {
     grid,
     nr,
     nz,
     nodes,
-    halfBandwidth,
+    surface,
+    first: profileOf(nr, nz, index, nodes),
     index,
     radial: pointTable(grid.r, true),
     axial: pointTable(grid.z, false),
@@ -109,6 +118,25 @@ export function loadElements(
   elements.coupling = couplingOf(b, body, elements, column, columns);
   elements.evaluation = evaluationOf(b, elements, keptNodes);
   return elements;
+}
+
+function profileOf(nr: number, nz: number, index: Int32Array, nodes: number): Int32Array {
+  const first = Int32Array.from({ length: nodes }, (_, i) => i);
+  const nnr = 2 * nr + 1;
+  for (let kz = 0; kz < nz; kz++) {
+    for (let kr = 0; kr < nr; kr++) {
+      let least = nodes;
+      for (let k = 0; k < 9; k++) {
+        const free = index[(2 * kz + ((k / 3) | 0)) * nnr + 2 * kr + (k % 3)] as number;
+        if (free >= 0 && free < least) least = free;
+      }
+      for (let k = 0; k < 9; k++) {
+        const free = index[(2 * kz + ((k / 3) | 0)) * nnr + 2 * kr + (k % 3)] as number;
+        if (free >= 0 && least < (first[free] as number)) first[free] = least;
+      }
+    }
+  }
+  return first;
 }
 
 /** Numbers per Gauss point in `radial` and `axial`. */
@@ -282,17 +310,18 @@ function fromMaps(sums: Map<number, number>[]): SparseColumns {
   return { cols: sums.length, rows, values };
 }
 
-/** The factored finite-element system of one material state, and A⁻¹(jωμ0·B). */
+/** The factored finite-element system of one material state. */
 export interface LoadSolution {
   /** E at kept boundary nodes for unit K in each kept column. */
   z: ComplexMatrix;
-  /** Fields at all free nodes per unit K (nodes × columns), row-major. */
-  fields: ComplexMatrix;
+  elements: LoadElements;
+  factors: Skyline;
+  omegaMu: number;
 }
 
 /**
  * Z = P·A⁻¹·(jωμ0 B) for resistivity per element (index iz·nr + ir) and permeability at its 9 Gauss points.
- * All boundary columns are solved at once in the factored system.
+ * B and P touch surface nodes only and these are eliminated last: the inside is never solved for here.
  */
 export function solveLoad(
   e: LoadElements,
@@ -300,33 +329,34 @@ export function solveLoad(
   resistivity: Float64Array,
   permeability: Float64Array,
 ): LoadSolution {
-  const n = e.nodes;
-  const a = skyline(Int32Array.from({ length: n }, (_, i) => Math.max(0, i - e.halfBandwidth)));
+  const a = skyline(e.first);
   stiffness(e, frequency, resistivity, permeability, a);
   factorSkyline(a);
   const cols = e.coupling.cols;
-  const x = complexMatrix(n, cols);
+  const from = e.surface;
+  const x = complexMatrix(e.nodes - from, cols);
   const omegaMu = 2 * Math.PI * frequency * MU0;
   for (let j = 0; j < cols; j++) {
     const at = e.coupling.rows[j] as Int32Array;
     const value = e.coupling.values[j] as Float64Array;
-    for (let k = 0; k < at.length; k++) x.im[(at[k] as number) * cols + j] = omegaMu * (value[k] as number);
+    for (let k = 0; k < at.length; k++)
+      x.im[((at[k] as number) - from) * cols + j] = omegaMu * (value[k] as number);
   }
-  solveSkyline(a, x);
+  solveSkyline(a, x, from);
   const z = complexMatrix(e.evaluation.cols, cols);
   for (let i = 0; i < e.evaluation.cols; i++) {
     const at = e.evaluation.rows[i] as Int32Array;
     const value = e.evaluation.values[i] as Float64Array;
     for (let k = 0; k < at.length; k++) {
       const v = value[k] as number;
-      const from = (at[k] as number) * cols;
+      const row = ((at[k] as number) - from) * cols;
       for (let j = 0; j < cols; j++) {
-        z.re[i * cols + j] = (z.re[i * cols + j] as number) + v * (x.re[from + j] as number);
-        z.im[i * cols + j] = (z.im[i * cols + j] as number) + v * (x.im[from + j] as number);
+        z.re[i * cols + j] = (z.re[i * cols + j] as number) + v * (x.re[row + j] as number);
+        z.im[i * cols + j] = (z.im[i * cols + j] as number) + v * (x.im[row + j] as number);
       }
     }
   }
-  return { z, fields: x };
+  return { z, elements: e, factors: a, omegaMu };
 }
 
 /** Adds every element's matrix. */
@@ -391,27 +421,22 @@ function stiffness(
   }
 }
 
-/** Fields at the free nodes for boundary currents K (kept columns). */
+/** E at the free nodes for boundary currents K (kept columns): one solution with the factors at hand. */
 export function nodeFields(solution: LoadSolution, k: ComplexVector): ComplexVector {
-  const n = solution.fields.rows;
-  const m = solution.fields.cols;
-  const re = new Float64Array(n);
-  const im = new Float64Array(n);
-  for (let i = 0; i < n; i++) {
-    let sr = 0;
-    let si = 0;
-    for (let j = 0; j < m; j++) {
-      const fr = solution.fields.re[i * m + j] as number;
-      const fi = solution.fields.im[i * m + j] as number;
-      const kr = k.re[j] as number;
-      const ki = k.im[j] as number;
-      sr += fr * kr - fi * ki;
-      si += fr * ki + fi * kr;
+  const { elements: e, factors, omegaMu } = solution;
+  const x = complexMatrix(e.nodes, 1);
+  for (let j = 0; j < e.coupling.cols; j++) {
+    const at = e.coupling.rows[j] as Int32Array;
+    const value = e.coupling.values[j] as Float64Array;
+    for (let i = 0; i < at.length; i++) {
+      const node = at[i] as number;
+      const v = omegaMu * (value[i] as number);
+      x.re[node] = (x.re[node] as number) - v * (k.im[j] as number);
+      x.im[node] = (x.im[node] as number) + v * (k.re[j] as number);
     }
-    re[i] = sr;
-    im[i] = si;
   }
-  return { re, im };
+  solveSkyline(factors, x);
+  return { re: x.re, im: x.im };
 }
 
 /**

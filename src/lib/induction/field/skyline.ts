@@ -85,32 +85,40 @@ export function factorSkyline(a: Skyline): void {
   }
 }
 
-/** Solves with the factors for all columns of x, in place. */
-export function solveSkyline(a: Skyline, x: ComplexMatrix): void {
+/**
+ * Solves with the factors for all columns of x, in place. With `from` > 0 only the last n − from rows: right
+ * when the right-hand side is zero above them and only they are wanted (x then has n − from rows).
+ */
+export function solveSkyline(a: Skyline, x: ComplexMatrix, from = 0): void {
   const { n, first, offset, re, im } = a;
   const m = x.cols;
   const xr = x.re;
   const xi = x.im;
-  for (let i = 0; i < n; i++) {
+  for (let i = from; i < n; i++) {
     const fi = first[i] as number;
     const ri = (offset[i] as number) - fi;
-    for (let k = fi; k < i; k++) axpy(xr, xi, m, i * m, k * m, re[ri + k] as number, im[ri + k] as number);
+    for (let k = fi > from ? fi : from; k < i; k++) {
+      axpy(xr, xi, m, (i - from) * m, (k - from) * m, re[ri + k] as number, im[ri + k] as number);
+    }
   }
-  for (let i = 0; i < n; i++) {
+  for (let i = from; i < n; i++) {
     const at = (offset[i] as number) + i - (first[i] as number);
     const qr = re[at] as number;
     const qi = im[at] as number;
-    for (let j = i * m; j < i * m + m; j++) {
+    const row = (i - from) * m;
+    for (let j = row; j < row + m; j++) {
       const r = xr[j] as number;
       const q = xi[j] as number;
       xr[j] = r * qr - q * qi;
       xi[j] = r * qi + q * qr;
     }
   }
-  for (let i = n - 1; i >= 0; i--) {
+  for (let i = n - 1; i >= from; i--) {
     const fi = first[i] as number;
     const ri = (offset[i] as number) - fi;
-    for (let k = fi; k < i; k++) axpy(xr, xi, m, k * m, i * m, re[ri + k] as number, im[ri + k] as number);
+    for (let k = fi > from ? fi : from; k < i; k++) {
+      axpy(xr, xi, m, (k - from) * m, (i - from) * m, re[ri + k] as number, im[ri + k] as number);
+    }
   }
 }
 
