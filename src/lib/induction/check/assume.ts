@@ -8,8 +8,10 @@ import type { Machine, Quantity, Severity, TankKind } from './types.ts';
 export interface Assumption {
   field: string;
   name: string;
-  /** What was taken instead; null: the matter is left out of the check. */
+  /** What was taken instead; null: see `taken`, or the matter is left out of the check. */
   value: Quantity | null;
+  /** What was taken, in words, where it is no quantity. */
+  taken?: string;
   /** Half width of its band as a fraction of the value. */
   band: number;
   severity: Exclude<Severity, 'blocker'>;
@@ -71,7 +73,8 @@ export function assumeMachine(
       value: null,
       band: 0.5,
       severity: 'caution',
-      howToFind: 'Read the supply’s circuit diagram; a parallel tank is taken meanwhile.',
+      taken: 'a parallel tank',
+      howToFind: 'Read it in the supply’s circuit diagram or manual.',
     });
   }
   const limits = supplyLimits(machine, assume);

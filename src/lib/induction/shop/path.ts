@@ -75,7 +75,8 @@ function polygonPath(coil: Coil, section: Section): CopperPath | null {
     return {
       windingLength: turns * Math.hypot(round, w.pitch),
       turns,
-      bendRadius: Math.max(1.5 * half, half),
+      // The corners of a channel are bent at about twice the tube (common practice) or mitred.
+      bendRadius: 4 * half,
       bends: Math.ceil(turns) * 8,
       coilDiameter: null,
     };

@@ -14,7 +14,9 @@ export const assumedValues: Rule = (context) => {
       figure: a.value,
       template: a.value
         ? `The ${a.name} is not known: {value} ±{band:%} is taken.`
-        : `The ${a.name} is not known and is left out of the figures.`,
+        : a.taken
+          ? `The ${a.name} is not known: ${a.taken} is taken, and the power’s band widened.`
+          : `The ${a.name} is not known and is left out of the figures.`,
       values,
       remedy: a.howToFind,
       source: commonPractice,

@@ -138,7 +138,10 @@ export const openTurns: Rule = (context) => {
 
 /** turns-touch: neighbouring turns touch, or nearly do. */
 export const touchingTurns: Rule = (context) => {
-  const refused = problemsOf(context).find((problem) => problem.code === 'turns-overlap');
+  // Leads that overlap are said by their own sizes.
+  const refused = problemsOf(context).find(
+    (problem) => problem.code === 'turns-overlap' && !problem.field.startsWith('coil.leads'),
+  );
   const gap = context.mechanics?.clearanceBetweenTurns ?? null;
   const tolerance = context.requirement.coil.pitchTolerance ?? 0.3e-3;
   const { winding, insulation } = context.requirement.coil;
@@ -258,7 +261,7 @@ export const outsideMethod: Rule = (context) => {
     );
   }
   const { sanity } = context;
-  if (sanity && Math.abs(sanity.difference) > 0.1) {
+  if (sanity && withinCheapRange(context) && Math.abs(sanity.difference) > 0.1) {
     out.push(
       finding({
         code: 'outside-method',
@@ -275,6 +278,12 @@ export const outsideMethod: Rule = (context) => {
   }
   return out;
 };
+
+/** Coils the cheap formula was fitted to: cylinders and cones of round tube. */
+function withinCheapRange(context: CheckContext): boolean {
+  const { winding, tube } = context.requirement.coil;
+  return tube.kind === 'round' && ['helix', 'conical', 'stepped', 'bore'].includes(winding.shape);
+}
 
 /** part-does-not-couple: a material without eddy currents. */
 export const notCoupling: Rule = (context) => {
