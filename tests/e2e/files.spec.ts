@@ -202,7 +202,9 @@ test('calls that are broken, foreign or too large are told so as problems', asyn
 
 test('the field works by keyboard alone', async ({ page }) => {
   await documentsOfANewShop(page);
-  await page.getByLabel('File', { exact: true }).focus();
+  const field = page.getByLabel('File', { exact: true });
+  await expect(field).toBeEnabled();
+  await field.focus();
   const chooser = page.waitForEvent('filechooser');
   await page.keyboard.press('Enter');
   await (await chooser).setFiles(pdf('keys.pdf', aPdf()));

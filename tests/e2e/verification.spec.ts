@@ -100,9 +100,9 @@ test('a fabricator asks, an admin refuses with reasons, it asks again, is verifi
   expect(mail.text).toContain(`/companies/${shop.companyId}/verification`);
 
   await page.goto('/notifications');
-  await expect(page.getByRole('button', { name: 'Your company is verified' })).toBeVisible();
+  await expect(page.getByRole('button', { name: 'Your company is verified', exact: true })).toBeVisible();
   await expectAccessible(page);
-  await page.getByRole('button', { name: 'Your company is verified' }).click();
+  await page.getByRole('button', { name: 'Your company is verified', exact: true }).click();
   await expect(page).toHaveURL(new RegExp(`/companies/${shop.companyId}/verification$`));
   await expect(page.getByText(/Verified until/).first()).toBeVisible();
 
