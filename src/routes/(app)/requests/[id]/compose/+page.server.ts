@@ -9,7 +9,7 @@ import { postRequest } from '$lib/server/workflows/post-request.ts';
 import type { Actions, PageServerLoad } from './$types.ts';
 
 export const load: PageServerLoad = async (event) => {
-  const actor = actorOf(event);
+  const actor = await loading(() => Promise.resolve(actorOf(event)));
   const { id } = event.params;
   const state = await loading(async () => (await requestForUpdate(database(), id)).state);
   // A posted request is no longer composed; whoever may not see it learns nothing from the way there.
