@@ -1,5 +1,6 @@
 /** POST /api/v1/impedance: a coil alone or with a part, at a list of frequencies, as an LCR meter would see it. */
 import { z } from 'zod';
+import type { ImpedanceSweep, SweepResult } from '../../induction/check/impedance-sweep.ts';
 import { solverSettingSchema } from './check.ts';
 import { coilSchema } from './coil.ts';
 import { materialChoiceSchema, workpieceSchema } from './part.ts';
@@ -37,7 +38,7 @@ export const impedanceRequestSchema = z
     current: q.current('Coil current', 'A rms; decides the permeability of magnetic steel').optional(),
     setting: solverSettingSchema.optional(),
   })
-  .describe('A coil, an optional part and a list of frequencies');
+  .describe('A coil, an optional part and a list of frequencies') satisfies z.ZodType<ImpedanceSweep>;
 export type ImpedanceRequest = z.infer<typeof impedanceRequestSchema>;
 
 const impedanceSchema = z.object({
@@ -65,5 +66,5 @@ export const impedanceResponseSchema = z
       }),
     ),
   })
-  .describe('Impedance at each frequency, bare and with the part');
+  .describe('Impedance at each frequency, bare and with the part') satisfies z.ZodType<SweepResult>;
 export type ImpedanceResponse = z.infer<typeof impedanceResponseSchema>;

@@ -1,0 +1,168 @@
+/** Units of electrical quantities, energy and power. */
+import { both, same, type DimensionEntry } from './unit-entry.ts';
+
+const inch = 0.0254;
+
+export const electricalUnits = {
+  power: {
+    name: 'power',
+    unit: 'W',
+    units: [
+      { symbol: 'W', factor: 1, aliases: ['watt', 'watts'] },
+      { symbol: 'kW', factor: 1e3 },
+      { symbol: 'MW', factor: 1e6 },
+      { symbol: 'mW', factor: 1e-3, hidden: true },
+    ],
+    field: both('kW'),
+    shown: same(['W', 'kW', 'MW']),
+    example: both('50 kW'),
+  },
+  'reactive-power': {
+    name: 'reactive power',
+    unit: 'var',
+    units: [
+      { symbol: 'var', factor: 1, aliases: ['VAr', 'VAR'] },
+      { symbol: 'kvar', factor: 1e3, aliases: ['kVAr', 'kVAR'] },
+      { symbol: 'Mvar', factor: 1e6, aliases: ['MVAr', 'MVAR'] },
+      { symbol: 'mvar', factor: 1e-3, hidden: true },
+    ],
+    field: both('kvar'),
+    shown: same(['var', 'kvar', 'Mvar']),
+    example: both('300 kvar'),
+  },
+  'apparent-power': {
+    name: 'apparent power',
+    unit: 'VA',
+    units: [
+      { symbol: 'VA', factor: 1 },
+      { symbol: 'kVA', factor: 1e3 },
+      { symbol: 'MVA', factor: 1e6 },
+      { symbol: 'mVA', factor: 1e-3, hidden: true },
+    ],
+    field: both('kVA'),
+    shown: same(['VA', 'kVA', 'MVA']),
+    example: both('600 kVA'),
+  },
+  frequency: {
+    name: 'frequency',
+    unit: 'Hz',
+    units: [
+      { symbol: 'Hz', factor: 1, aliases: ['cps'] },
+      { symbol: 'kHz', factor: 1e3, aliases: ['kc'] },
+      { symbol: 'MHz', factor: 1e6 },
+      { symbol: 'mHz', factor: 1e-3, hidden: true },
+    ],
+    field: both('kHz'),
+    shown: same(['Hz', 'kHz', 'MHz']),
+    example: both('20 kHz'),
+  },
+  inductance: {
+    name: 'inductance',
+    unit: 'H',
+    units: [
+      { symbol: 'nH', factor: 1e-9 },
+      { symbol: 'µH', factor: 1e-6, aliases: ['uH', 'μH'] },
+      { symbol: 'mH', factor: 1e-3 },
+      { symbol: 'H', factor: 1, aliases: ['henry'] },
+    ],
+    field: both('µH'),
+    shown: same(['nH', 'µH', 'mH', 'H']),
+    example: both('0.85 µH'),
+  },
+  capacitance: {
+    name: 'capacitance',
+    unit: 'F',
+    // No mF: in the American trade "MF" and "mfd" are microfarads, so mF is asked back instead of guessed.
+    units: [
+      { symbol: 'pF', factor: 1e-12 },
+      { symbol: 'nF', factor: 1e-9 },
+      { symbol: 'µF', factor: 1e-6, aliases: ['uF', 'μF', 'mfd'] },
+      { symbol: 'F', factor: 1, aliases: ['farad'] },
+    ],
+    field: both('µF'),
+    shown: same(['pF', 'nF', 'µF']),
+    example: both('0.66 µF'),
+  },
+  voltage: {
+    name: 'voltage',
+    unit: 'V',
+    units: [
+      { symbol: 'mV', factor: 1e-3 },
+      { symbol: 'V', factor: 1, aliases: ['volt', 'volts', 'Vrms', 'Vac', 'Vdc'] },
+      { symbol: 'kV', factor: 1e3 },
+      { symbol: 'MV', factor: 1e6, hidden: true },
+    ],
+    field: both('V'),
+    shown: same(['mV', 'V', 'kV']),
+    example: both('600 V'),
+  },
+  current: {
+    name: 'current',
+    unit: 'A',
+    units: [
+      { symbol: 'mA', factor: 1e-3 },
+      { symbol: 'A', factor: 1, aliases: ['amp', 'amps', 'Arms'] },
+      { symbol: 'kA', factor: 1e3 },
+      { symbol: 'MA', factor: 1e6, hidden: true },
+    ],
+    field: both('A'),
+    shown: same(['mA', 'A', 'kA']),
+    example: both('400 A'),
+  },
+  resistance: {
+    name: 'resistance',
+    unit: 'ohm',
+    units: [
+      { symbol: 'µΩ', factor: 1e-6, aliases: ['uohm', 'uΩ', 'μΩ', 'µohm', 'μohm', 'microohm', 'micro-ohm'] },
+      { symbol: 'mΩ', factor: 1e-3, aliases: ['mohm', 'milliohm', 'milliohms'] },
+      { symbol: 'Ω', factor: 1, aliases: ['ohm', 'ohms', 'Ω'] },
+      { symbol: 'kΩ', factor: 1e3, aliases: ['kohm'] },
+      { symbol: 'MΩ', factor: 1e6, aliases: ['Mohm', 'megohm'] },
+    ],
+    field: both('mΩ'),
+    shown: same(['µΩ', 'mΩ', 'Ω', 'kΩ', 'MΩ']),
+    example: both('12 mΩ'),
+  },
+  energy: {
+    name: 'energy',
+    unit: 'J',
+    units: [
+      { symbol: 'J', factor: 1 },
+      { symbol: 'kJ', factor: 1e3 },
+      { symbol: 'MJ', factor: 1e6 },
+      { symbol: 'mJ', factor: 1e-3, hidden: true },
+      { symbol: 'kWh', factor: 3.6e6 },
+    ],
+    field: both('kJ'),
+    shown: same(['J', 'kJ', 'MJ']),
+    example: both('120 kJ'),
+  },
+  'flux-density': {
+    name: 'flux density',
+    unit: 'T',
+    units: [
+      { symbol: 'nT', factor: 1e-9 },
+      { symbol: 'µT', factor: 1e-6, aliases: ['uT', 'μT'] },
+      { symbol: 'mT', factor: 1e-3 },
+      { symbol: 'T', factor: 1 },
+      { symbol: 'G', factor: 1e-4, aliases: ['gauss'] },
+    ],
+    field: both('µT'),
+    shown: same(['nT', 'µT', 'mT', 'T']),
+    example: both('100 µT'),
+  },
+  'power-density': {
+    name: 'power density',
+    unit: 'W/m2',
+    units: [
+      { symbol: 'W/cm²', factor: 1e4, aliases: ['W/cm2'] },
+      { symbol: 'kW/cm²', factor: 1e7, aliases: ['kW/cm2'] },
+      { symbol: 'W/m²', factor: 1, aliases: ['W/m2'] },
+      { symbol: 'W/in²', factor: 1 / (inch * inch), aliases: ['W/in2'] },
+      { symbol: 'kW/in²', factor: 1000 / (inch * inch), aliases: ['kW/in2'] },
+    ],
+    field: { metric: 'W/cm²', inch: 'W/in²' },
+    shown: { metric: ['W/cm²', 'kW/cm²'], inch: ['W/in²', 'kW/in²'] },
+    example: { metric: '500 W/cm²', inch: '3.2 kW/in²' },
+  },
+} satisfies Record<string, DimensionEntry>;
