@@ -891,8 +891,9 @@ CREATE TABLE `audit_event` (
 	`seal` text
 );
 --> statement-breakpoint
-CREATE INDEX `audit_subject` ON `audit_event` (`subject_type`,`subject_id`);--> statement-breakpoint
-CREATE INDEX `audit_company` ON `audit_event` (`company_id`,`at`);--> statement-breakpoint
+CREATE INDEX `audit_subject` ON `audit_event` (`subject_type`,`subject_id`,`id`);--> statement-breakpoint
+CREATE INDEX `audit_type` ON `audit_event` (`subject_type`,`id`);--> statement-breakpoint
+CREATE INDEX `audit_company` ON `audit_event` (`company_id`,`id`);--> statement-breakpoint
 CREATE INDEX `audit_seal_rows` ON `audit_event` (`seal`,`id`);--> statement-breakpoint
 CREATE INDEX `audit_unsealed` ON `audit_event` (`id`) WHERE "audit_event"."seal" is null;--> statement-breakpoint
 CREATE TABLE `job` (
@@ -912,6 +913,7 @@ CREATE TABLE `job` (
 );
 --> statement-breakpoint
 CREATE INDEX `job_due` ON `job` (`state`,`run_at`);--> statement-breakpoint
+CREATE INDEX `job_list` ON `job` (`state`,`id`);--> statement-breakpoint
 CREATE UNIQUE INDEX `job_dedupe` ON `job` (`kind`,`dedupe_key`);--> statement-breakpoint
 CREATE TABLE `notification` (
 	`id` text PRIMARY KEY NOT NULL,
@@ -951,6 +953,8 @@ CREATE TABLE `outbox_mail` (
 CREATE UNIQUE INDEX `outbox_mail_dedupe_key_unique` ON `outbox_mail` (`dedupe_key`);--> statement-breakpoint
 CREATE INDEX `outbox_due` ON `outbox_mail` (`state`,`run_at`);--> statement-breakpoint
 CREATE INDEX `outbox_subject` ON `outbox_mail` (`subject_type`,`subject_id`);--> statement-breakpoint
+CREATE INDEX `outbox_about` ON `outbox_mail` (`subject_id`,`id`);--> statement-breakpoint
+CREATE INDEX `outbox_list` ON `outbox_mail` (`state`,`id`);--> statement-breakpoint
 CREATE TABLE `rate_limit` (
 	`key` text PRIMARY KEY NOT NULL,
 	`count` integer NOT NULL,

@@ -53,18 +53,16 @@ async function aMail(secret = false): Promise<string> {
 
 async function aJob(state: 'queued' | 'dead' | 'running' | 'done'): Promise<string> {
   const id = newId();
-  await t.db
-    .insert(job)
-    .values({
-      id,
-      kind: 'test-job',
-      payload: {},
-      state,
-      attempts: 5,
-      runAt: 1,
-      createdAt: 1,
-      lastError: 'E',
-    });
+  await t.db.insert(job).values({
+    id,
+    kind: 'test-job',
+    payload: {},
+    state,
+    attempts: 5,
+    runAt: 1,
+    createdAt: 1,
+    lastError: 'E',
+  });
   return id;
 }
 
@@ -252,6 +250,7 @@ test('the overview counts what waits', async () => {
   await aCompany(t.db, 'fabricator');
   expect(await adminOverview(t.db, admin)).toMatchObject({
     waitingVerifications: 0,
+    openDisputes: 0,
     verifiedFabricators: 1,
     mails: { queued: 1, sent: 0 },
     jobs: { dead: 1, queued: 0 },

@@ -325,16 +325,28 @@ describe('who may', () => {
     await expect(link(otherBuyer)).resolves.toMatchObject({ name: 'a.pdf' });
   });
 
-  test('an admin reads company documents, and the audit trail tells it; sketches and bids they do not', async () => {
+  test('an admin reads papers of an order, told in the audit trail, and neither sketches nor bids nor kept papers', async () => {
     const admin = await anAdmin(t.db);
+    const owner = await aMember(t.db, buyerId, ['owner']);
+    const upload = (purpose: 'dispute-evidence' | 'request-sketch' | 'company-document') =>
+      anUploadedFile(t.db, objects.store, owner, { companyId: buyerId, purpose });
+    const evidence = await upload('dispute-evidence');
+    await expect(fileLink(t.db, admin, evidence, objects.store)).resolves.toMatchObject({
+      name: 'paper.pdf',
+    });
+    for (const fileId of [await upload('request-sketch'), await upload('company-document')]) {
+      await expect(fileLink(t.db, admin, fileId, objects.store)).rejects.toMatchObject({ code: 'not-found' });
+    }
+    const told = await t.db.select().from(auditEvent).where(eq(auditEvent.action, 'file.read-by-admin'));
+    expect(told).toMatchObject([{ actorUserId: admin.userId, subjectId: evidence, companyId: buyerId }]);
+  });
+
+  test('papers of a company are not for its technicians', async () => {
     const owner = await aMember(t.db, buyerId, ['owner']);
     const fileId = await anUploadedFile(t.db, objects.store, owner, {
       companyId: buyerId,
       purpose: 'company-document',
     });
-    await expect(fileLink(t.db, admin, fileId, objects.store)).resolves.toMatchObject({ name: 'paper.pdf' });
-    const told = await t.db.select().from(auditEvent).where(eq(auditEvent.action, 'file.read-by-admin'));
-    expect(told).toMatchObject([{ actorUserId: admin.userId, subjectId: fileId, companyId: buyerId }]);
     const technician = await aMember(t.db, buyerId, ['technician']);
     await expect(fileLink(t.db, technician, fileId, objects.store)).rejects.toMatchObject({
       code: 'not-found',

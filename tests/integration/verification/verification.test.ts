@@ -16,6 +16,7 @@ import { verificationCase } from '../../../src/lib/server/db/schema/verification
 import {
   addCompanyDocument,
   archiveCompanyDocument,
+  fileLink,
   listCompanyDocuments,
 } from '../../../src/lib/server/files/index.ts';
 import {
@@ -349,6 +350,17 @@ describe('papers of a company', () => {
     expect(await listCompanyDocuments(t.db, owner, shopId)).toMatchObject([
       { id: documentId, archivedAt: null },
     ]);
+  });
+
+  test('an admin reads a paper only once it was named in an asking, and the audit trail tells it', async () => {
+    const documentId = await aDocument();
+    const [paper] = await listCompanyDocuments(t.db, owner, shopId);
+    const read = () => fileLink(t.db, admin, paper?.fileId ?? '', objects.store);
+    await expect(read()).rejects.toMatchObject({ code: 'not-found' });
+    await asked([documentId]);
+    await expect(read()).resolves.toMatchObject({ name: 'paper.pdf' });
+    const told = await t.db.select().from(auditEvent).where(eq(auditEvent.action, 'file.read-by-admin'));
+    expect(told).toMatchObject([{ actorUserId: admin.userId, companyId: shopId }]);
   });
 
   test('an archived paper leaves the list and stays in the case that named it', async () => {

@@ -26,6 +26,7 @@ export class UploadItem {
   fileId = $state<string | null>(null);
 
   #slot: UploadSlot | null = null;
+  // eslint-disable-next-line svelte/prefer-svelte-reactivity -- bookkeeping; no screen reads it
   #parts = new Map<number, string>();
   #stop = new AbortController();
   readonly #key: string;

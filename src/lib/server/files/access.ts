@@ -4,7 +4,8 @@ import { AppError } from '../../domain/errors.ts';
 import { filePurposeFacts, type FilePurpose } from '../../domain/files.ts';
 import { can } from '../access/index.ts';
 import type { Reader } from '../db/index.ts';
-import { file, fileAudience } from '../db/schema/files.ts';
+import { companyDocument, file, fileAudience } from '../db/schema/files.ts';
+import { verificationDocument } from '../db/schema/verification.ts';
 
 export type FileRow = typeof file.$inferSelect;
 
@@ -17,6 +18,17 @@ export async function fileRow(reader: Reader, fileId: string): Promise<FileRow> 
 /** What a member of the owning company needs to read a file of this purpose. */
 function ownRead(actor: Actor, purpose: FilePurpose, companyId: string): boolean {
   return can(actor, purpose === 'company-document' ? 'company.documents' : 'company.view', { companyId });
+}
+
+/** Papers of a company are its own until it names them when it asks to be verified. */
+async function shownForVerification(reader: Reader, fileId: string): Promise<boolean> {
+  const [named] = await reader
+    .select({ caseId: verificationDocument.caseId })
+    .from(verificationDocument)
+    .innerJoin(companyDocument, eq(companyDocument.id, verificationDocument.documentId))
+    .where(eq(companyDocument.fileId, fileId))
+    .limit(1);
+  return named !== undefined;
 }
 
 /** Who may read: the owner, the companies it was shared with, verified fabricators where it is open, admins by purpose. */
@@ -36,5 +48,7 @@ export async function mayRead(
     if (granted) return 'member';
   }
   const admin = filePurposeFacts[row.purpose].adminRead;
-  return admin && can(actor, admin) ? 'admin' : null;
+  if (!admin || !can(actor, admin)) return null;
+  if (row.purpose === 'company-document' && !(await shownForVerification(reader, row.id))) return null;
+  return 'admin';
 }

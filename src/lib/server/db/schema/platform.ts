@@ -26,8 +26,10 @@ export const auditEvent = sqliteTable(
     seal: text('seal'),
   },
   (table) => [
-    index('audit_subject').on(table.subjectType, table.subjectId),
-    index('audit_company').on(table.companyId, table.at),
+    // Ids are in the order of time, so lists go by them.
+    index('audit_subject').on(table.subjectType, table.subjectId, table.id),
+    index('audit_type').on(table.subjectType, table.id),
+    index('audit_company').on(table.companyId, table.id),
     index('audit_seal_rows').on(table.seal, table.id),
     index('audit_unsealed')
       .on(table.id)
@@ -66,6 +68,8 @@ export const outboxMail = sqliteTable(
   (table) => [
     index('outbox_due').on(table.state, table.runAt),
     index('outbox_subject').on(table.subjectType, table.subjectId),
+    index('outbox_about').on(table.subjectId, table.id),
+    index('outbox_list').on(table.state, table.id),
   ],
 );
 
@@ -111,6 +115,7 @@ export const job = sqliteTable(
   },
   (table) => [
     index('job_due').on(table.state, table.runAt),
+    index('job_list').on(table.state, table.id),
     uniqueIndex('job_dedupe').on(table.kind, table.dedupeKey),
   ],
 );

@@ -1,6 +1,7 @@
 import { redirect } from '@sveltejs/kit';
 import { AppError } from '$lib/domain/errors.ts';
 import { decisionForm } from '$lib/schemas/forms/order.ts';
+import { requireFreshSession } from '$lib/server/auth/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { decideAppeal, decideDispute } from '$lib/server/disputes/index.ts';
 import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
@@ -16,6 +17,7 @@ export const load: PageServerLoad = (event) =>
 
 function decide(name: string, work: typeof decideDispute) {
   return formAction(name, async (form, event: RequestEvent) => {
+    requireFreshSession(event.locals.session);
     const { version, ...input } = parseInput(decisionForm, Object.fromEntries(form));
     await work(database(), actorOf(event), {
       disputeId: event.params.id,
