@@ -68,13 +68,12 @@ export function splitByWeights(amount: number, weights: readonly number[]): numb
 
 const digits: Record<Currency, number> = { EUR: 2, USD: 2, GBP: 2 };
 
-/** Text for people, e.g. `€ 1,234.50`; the same on server and browser. */
+/** Text for people, e.g. `EUR 1,234.50` (no-break space); the same on server, browser and in mails. */
 export function formatMoney({ amount, currency }: Money): string {
   const sign = amount < 0 ? '−' : '';
   const units = Math.abs(amount) / 10 ** digits[currency];
   const text = units.toLocaleString('en-US', { minimumFractionDigits: 2, maximumFractionDigits: 2 });
-  const symbol = { EUR: '€', USD: '$', GBP: '£' }[currency];
-  return `${sign}${symbol} ${text}`;
+  return `${sign}${currency}\u00a0${text}`;
 }
 
 /** `1,234.50`, `1234.5`, `1234,50` → minor units; undefined when it is not an amount or ambiguous. */

@@ -52,7 +52,7 @@ export async function overtakeOffers(tx: Tx, disputeId: string): Promise<void> {
     .where(and(eq(settlementOffer.disputeId, disputeId), eq(settlementOffer.state, 'open')));
 }
 
-/** Words for a split, e.g. `release € 120.00, refund € 80.00`. */
+/** Words for a split, e.g. `release EUR 120.00, refund EUR 80.00`. */
 export function splitText(found: Pick<DisputeCase, 'order'>, split: Split): string {
   const { currency } = found.order;
   return `release ${formatMoney({ amount: split.release, currency })}, refund ${formatMoney({ amount: split.refund, currency })}`;
