@@ -46,7 +46,7 @@ export interface Stack extends Services {
 }
 
 const ROOT = path.resolve(path.dirname(fileURLToPath(import.meta.url)), '../..');
-const SEED_TIMEOUT_MS = 10 * 60_000;
+const COMMAND_TIMEOUT_MS = 10 * 60_000;
 
 /** The bundled script where there is one, else the source through tsx. */
 function script(build: string, bundled: string, source: string): string[] {
@@ -116,22 +116,23 @@ async function bringUp(
     secrets,
     extra: options.env,
   });
-  const command = (name: string, args: string[] = []) =>
+  const command = (name: string, args: string[] = [], onLine?: (line: string) => void) =>
     runCommand({
       args: [...script(build, `cli/${name}.js`, `src/cli/${name}.ts`), ...args],
       env,
       cwd: ROOT,
-      timeoutMs: SEED_TIMEOUT_MS,
+      timeoutMs: COMMAND_TIMEOUT_MS,
+      onLine,
     });
-  const must = async (name: string) => {
-    const { code, output } = await command(name);
+  const must = async (name: string, onLine?: (line: string) => void) => {
+    const { code, output } = await command(name, [], onLine);
     if (code !== 0) throw new Error(`${name} ended with code ${String(code)}:\n${output.trimEnd()}`);
   };
   await must('migrate');
   const seeded = path.join(dataDir, 'seeded');
   if (options.seed === true && !existsSync(seeded)) {
     say('Filling the demo with data …');
-    await must('seed');
+    await must('seed', say);
     writeFileSync(seeded, `${new Date().toISOString()}\n`);
   }
   const { app, worker } = startProcesses(build, env, path.join(dataDir, 'logs'), onStop);

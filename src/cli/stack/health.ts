@@ -1,6 +1,6 @@
 import type { ManagedProcess } from './process.ts';
 
-const READY_TIMEOUT_MS = 60_000;
+const READY_TIMEOUT_MS = 120_000;
 
 /** Waits until the application says that it is ready; throws with the end of its log when it does not. */
 export async function waitForHealth(origin: string, app: ManagedProcess): Promise<void> {

@@ -1,6 +1,7 @@
 import { spawn, type ChildProcess } from 'node:child_process';
 import { createWriteStream, mkdirSync, readFileSync } from 'node:fs';
 import path from 'node:path';
+import { createInterface } from 'node:readline';
 
 export interface ProcessOptions {
   name: string;
@@ -89,6 +90,8 @@ export function runCommand(options: {
   env: Record<string, string>;
   cwd: string;
   timeoutMs: number;
+  /** Told each line as it is printed. */
+  onLine?: ((line: string) => void) | undefined;
 }): Promise<CommandResult> {
   return new Promise((resolve, reject) => {
     const child = spawn(process.execPath, options.args, {
@@ -102,6 +105,8 @@ export function runCommand(options: {
     };
     child.stdout.on('data', keep);
     child.stderr.on('data', keep);
+    const { onLine } = options;
+    if (onLine !== undefined) createInterface({ input: child.stdout }).on('line', onLine);
     const timer = setTimeout(() => child.kill('SIGKILL'), options.timeoutMs);
     child.once('error', reject);
     child.once('close', (code) => {
