@@ -48,7 +48,7 @@ function operators(g: FieldGeometry, resistivity: number, frequency: number): Co
     const key = Math.round(radius * 1e10);
     let full = cache.get(key);
     if (full === undefined) {
-      const section = g.coil.section;
+      const section = g.section;
       full =
         section.kind === 'round'
           ? roundTubeOperator(turn.body.count, radius, section.radius, section.wall, resistivity, frequency)

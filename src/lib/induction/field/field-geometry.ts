@@ -1,5 +1,6 @@
 import type { PartBody, RingCoil } from '../coil/rings.ts';
 import { partGap, surfaceGap } from '../coil/rings.ts';
+import type { Section } from '../coil/section.ts';
 import type { SolverSetting } from '../check/types.ts';
 import { InductionInputError } from '../input-error.ts';
 import { assembleBlock, nearOrder } from './assemble.ts';
@@ -79,6 +80,8 @@ export interface KeptLoad {
  */
 export interface FieldGeometry {
   coil: RingCoil;
+  /** Section as it is solved: a round tube bent tightly is solved as a rectangle with full corners. */
+  section: Section;
   resolution: Resolution;
   boundary: Boundary;
   symmetric: boolean;
@@ -98,6 +101,27 @@ export interface FieldGeometry {
 const PLANE = 1e-9;
 
 /**
+ * Tube radius over ring radius above which the closed operator of a round tube (exact but for terms of the
+ * square of this ratio) gives way to finite elements in the true toroidal section.
+ */
+const TIGHT_BEND = 0.25;
+
+function solvedSection(coil: RingCoil): Section {
+  const s = coil.section;
+  if (s.kind !== 'round') return s;
+  const smallest = Math.min(...coil.rings.map((ring) => ring.radius));
+  if (s.radius <= TIGHT_BEND * smallest) return s;
+  return {
+    kind: 'rectangular',
+    halfAxial: s.radius,
+    halfRadial: s.radius,
+    wall: s.wall,
+    outerCorner: s.radius,
+    innerCorner: Math.max(0, s.radius - s.wall),
+  };
+}
+
+/**
  * Prepares the geometry of one coil with zero or more parts on its axis.
  *
  * @throws InductionInputError `too-many-unknowns` when even six nodes per turn exceed the limit
@@ -105,20 +129,16 @@ const PLANE = 1e-9;
 export function prepareGeometry(coil: RingCoil, parts: PartBody[], wanted: Resolution): FieldGeometry {
   let resolution = wanted;
   const symmetric = isSymmetric(coil, parts);
+  const section = solvedSection(coil);
   for (;;) {
     const sizes = parts.map((part) => loadSizes(coil, part));
     const contours = parts.map((part, k) =>
       loadContour(part, sizes[k] as LoadSizes, resolution.cornerLevels),
     );
-    const boundary = buildBoundary(
-      coil.rings,
-      coil.section,
-      resolution.nodesPerRound,
-      resolution.order,
-      contours,
-    );
+    const boundary = buildBoundary(coil.rings, section, resolution.nodesPerRound, resolution.order, contours);
     const unknowns = (boundary.n + coil.rings.length) / (symmetric ? 2 : 1);
-    if (unknowns <= MOST_UNKNOWNS) return assemble(coil, parts, sizes, boundary, resolution, symmetric);
+    if (unknowns <= MOST_UNKNOWNS)
+      return assemble(coil, section, parts, sizes, boundary, resolution, symmetric);
     if (resolution.nodesPerRound > 6 || resolution.order > 2) {
       resolution = {
         ...resolution,
@@ -149,6 +169,7 @@ function isSymmetric(coil: RingCoil, parts: PartBody[]): boolean {
 
 function assemble(
   coil: RingCoil,
+  section: Section,
   parts: PartBody[],
   sizes: LoadSizes[],
   boundary: Boundary,
@@ -193,6 +214,7 @@ function assemble(
   const m = kept.length;
   const geometry: FieldGeometry = {
     coil,
+    section,
     resolution,
     boundary,
     symmetric,

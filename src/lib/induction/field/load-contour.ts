@@ -13,7 +13,8 @@ export interface LoadSizes {
 const CORNER_RATIO = 0.35;
 
 /**
- * Panel sizes: h0 = min(pitch, max(1.5·gap, pitch/3)) opposite the coil (pitch := tube size for one turn),
+ * Panel sizes: h0 = min(pitch, max(1.5·gap, min(pitch/3, 0.45·tube))) opposite the coil (pitch := tube size
+ * for one turn),
  * growing beyond the coil ends as 0.6 of the distance; end faces max(h0, ro/3), except a face that
  * turns look at from beyond it (pancake), where the axial clearance is the gap.
  */
@@ -22,7 +23,8 @@ export function loadSizes(coil: RingCoil, body: PartBody): LoadSizes {
   const tube = 2 * section.halfAxial;
   const pitch = rings.length === 1 ? tube : Math.max(Math.min(coil.pitch, 4 * tube), 0.5 * tube);
   const gap = Math.min(...rings.map((ring) => partGap(ring, section, body)));
-  const h0 = Math.min(pitch, Math.max(1.5 * gap, pitch / 3));
+  // Opposite wide-set tubes close to the part the current follows the single tube, not the pitch.
+  const h0 = Math.min(pitch, Math.max(1.5 * gap, Math.min(pitch / 3, 0.45 * tube)));
   const first = Math.min(...rings.map((ring) => ring.z)) - section.halfAxial;
   const last = Math.max(...rings.map((ring) => ring.z)) + section.halfAxial;
   const innerR = Math.min(...rings.map((ring) => ring.radius)) - section.halfRadial;

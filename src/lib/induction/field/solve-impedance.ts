@@ -136,7 +136,11 @@ function answerOf(
     assumptions.push('A broken number of turns is solved as whole rings in the same length and scaled.');
   }
   const own = field.turnPower.reduce((sum, p) => sum + p, 0);
-  const load = field.partPower.reduce((sum, p) => sum + p, 0);
+  // A part far thinner than its skin depth takes next to nothing: rounding must not make it negative.
+  const load = Math.max(
+    0,
+    field.partPower.reduce((sum, p) => sum + p, 0),
+  );
   const loadResistance = load * scale * scale;
   let resistance = own * scale + loadResistance;
   let inductance = (field.reactance / omega) * scale * scale;
