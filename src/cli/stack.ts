@@ -126,7 +126,9 @@ async function bringUp(
     });
   const must = async (name: string, onLine?: (line: string) => void) => {
     const { code, output } = await command(name, [], onLine);
-    if (code !== 0) throw new Error(`${name} ended with code ${String(code)}:\n${output.trimEnd()}`);
+    if (code === 0) return;
+    const hint = name === 'migrate' ? '\nnpm run demo -- --fresh begins with empty data.' : '';
+    throw new Error(`${name} ended with code ${String(code)}:\n${output.trimEnd()}${hint}`);
   };
   await must('migrate');
   const seeded = path.join(dataDir, 'seeded');
