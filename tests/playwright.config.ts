@@ -3,7 +3,11 @@ import { stackInfo } from './support/stack-info.ts';
 
 export default defineConfig({
   testDir: 'e2e',
-  testMatch: '**/*.spec.ts',
+  // Journeys move business time for everybody, so they run alone, after the others.
+  projects: [
+    { name: 'pages', testMatch: '*.spec.ts' },
+    { name: 'journeys', testMatch: 'journey/*.spec.ts', dependencies: ['pages'], fullyParallel: false },
+  ],
   outputDir: '../test-results',
   // Two cores serve the browser, the application and the worker.
   workers: 2,
