@@ -8,6 +8,7 @@ import { existsSync, mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync
 import path from 'node:path';
 import process from 'node:process';
 import { fileURLToPath } from 'node:url';
+import { stripVTControlCharacters } from 'node:util';
 
 export const root = path.resolve(path.dirname(fileURLToPath(import.meta.url)), '../..');
 
@@ -110,7 +111,8 @@ export async function build() {
   ];
   for (const args of steps) {
     const result = await run(process.execPath, args, { quiet: true, env });
-    if (result.code !== 0) throw new Error(`The build failed:\n${result.output.trimEnd()}`);
+    if (result.code !== 0)
+      throw new Error(`The build failed:\n${stripVTControlCharacters(result.output).trimEnd()}`);
   }
   mkdirSync(path.dirname(buildStamp), { recursive: true });
   writeFileSync(buildStamp, wanted);
