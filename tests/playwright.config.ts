@@ -5,8 +5,8 @@ export default defineConfig({
   testDir: 'e2e',
   // Journeys move business time for everybody, so they run alone, after the others.
   projects: [
-    { name: 'pages', testMatch: '*.spec.ts' },
-    { name: 'journeys', testMatch: 'journey/*.spec.ts', dependencies: ['pages'], fullyParallel: false },
+    { name: 'pages', testMatch: '**/*.spec.ts', testIgnore: '**/journey/**' },
+    { name: 'journeys', testMatch: '**/journey/*.spec.ts', dependencies: ['pages'], fullyParallel: false },
   ],
   outputDir: '../test-results',
   // Two cores serve the browser, the application and the worker.
