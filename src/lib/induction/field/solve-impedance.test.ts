@@ -128,6 +128,20 @@ describe('solveImpedance', () => {
     expect(refusal(change)).toEqual({ code, field });
   });
 
+  it('does not take a number that is none for one not known', () => {
+    const winding = {
+      shape: 'helix' as const,
+      insideDiameter: null,
+      clearance: 0.005,
+      turns: 4,
+      pitch: 0.011,
+    };
+    expect(solveImpedance({ ...query, coil: { ...coil, winding } }).inductance).toBeGreaterThan(0);
+    expect(refusal({ coil: { ...coil, winding: { ...winding, insideDiameter: Number.NaN } } }).code).toBe(
+      'not-a-number',
+    );
+  });
+
   it('refuses open turns, touching turns and drawings', () => {
     const winding = {
       shape: 'helix' as const,

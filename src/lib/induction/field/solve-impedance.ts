@@ -179,7 +179,10 @@ const RECENT = 3;
 
 /** Reuses the last few geometries: ladders, cold/hot and bare/loaded pairs ask for the same many times. */
 function prepareOnce(query: ImpedanceQuery): PreparedCoil {
-  const key = JSON.stringify([query.coil, query.part, query.setting]);
+  // NaN would read as null, which is a valid "not known": keep them apart.
+  const key = JSON.stringify([query.coil, query.part, query.setting], (_, value: unknown) =>
+    typeof value === 'number' && !Number.isFinite(value) ? String(value) : value,
+  );
   const known = recent.get(key);
   if (known !== undefined) return known;
   const prepared = prepareCoil(query.coil, query.part, query.setting);

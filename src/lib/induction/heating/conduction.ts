@@ -80,7 +80,6 @@ export function conductionStep(
   const rhs = new Float64Array(n);
   const surface = surfacesOf(state);
   const surfaceC = surface.map((s) => old[s.cell] as number);
-  let loss = 0;
   for (let iteration = 0; iteration < MOST_ITERATIONS; iteration++) {
     band.fill(0);
     const at = (cell: number) => (radialFirst ? cell : (cell % nr) * nz + ((cell / nr) | 0));
@@ -93,7 +92,7 @@ export function conductionStep(
       rhs[row] = (source[c] as number) - rate * (material.enthalpy(x) - (h0[c] as number));
     }
     conduct(state, material, t, band, rhs, width, at);
-    loss = loseHeat(surface, material, t, surfaceC, ambientC, band, rhs, width, at);
+    const loss = loseHeat(surface, material, t, surfaceC, ambientC, band, rhs, width, at);
     if (!solveBanded(n, width, band, rhs)) return null;
     let largest = 0;
     for (let c = 0; c < n; c++) {

@@ -3,14 +3,10 @@ import { isAxisymmetric } from '../coil/rings.ts';
 import { facingSide, type FacingSide } from '../field/part-model.ts';
 import type { Material } from '../materials/types.ts';
 import { CoilAndPart, type ElectricState } from './coil-and-part.ts';
-import {
-  conductionState,
-  conductionStep,
-  surfaceTemperature,
-  type ConductionState,
-  type SurfaceTransfer,
-} from './conduction.ts';
-import type { HeatingEnd, HeatingInput, HeatingPoint, HeatingResult, HeatingWatch } from './types.ts';
+import { conductionStep, type ConductionState } from './conduction.ts';
+import { HeatingRecorder } from './recorder.ts';
+import { elementTemperatures, placesOf, thermalState } from './thermal-grid.ts';
+import type { HeatingEnd, HeatingInput, HeatingResult, HeatingWatch } from './types.ts';
 
 /** Temperature change aimed at per step, largest accepted, K. */
 const STEP_AIM = 10;
@@ -19,7 +15,6 @@ const STEP_MOST = 30;
 const LEAST_STEPS = 80;
 /** Drift of ln ρ or ln μ that calls for a new field solution. */
 const DRIFT = 0.04;
-const MOST_POINTS = 400;
 const MOST_STEPS = 20_000;
 const MOST_UPDATES = 1500;
 
@@ -62,112 +57,6 @@ function checkInput(input: HeatingInput): void {
   else requireWithin(frequency.capacitance, 1e-12, 1, 'frequency.capacitance', 'Capacitance');
 }
 
-/** Each quadratic element becomes two cells by two. */
-function cellEdges(edges: Float64Array): Float64Array {
-  const out = new Float64Array(2 * edges.length - 1);
-  for (let k = 0; k < edges.length; k++) {
-    out[2 * k] = edges[k] as number;
-    if (k + 1 < edges.length) out[2 * k + 1] = 0.5 * ((edges[k] as number) + (edges[k + 1] as number));
-  }
-  return out;
-}
-
-function thermalState(run: CoilAndPart, input: HeatingInput, side: FacingSide): ConductionState {
-  const { grid } = run.model.elements;
-  const { part } = run.load;
-  const emissivity = input.emissivity ?? run.material.emissivity;
-  const open: SurfaceTransfer = { convection: input.convection, emissivity };
-  // A bore that does not look at the coil sees mostly itself; what leaves through its ends is counted.
-  const escape =
-    side === 'bore' ? 1 : 1 / (1 + (part.high - part.low) / Math.max(1e-9, 2 * part.innerRadius));
-  const bore: SurfaceTransfer = { convection: input.convection * escape, emissivity: emissivity * escape };
-  return conductionState(
-    {
-      r: cellEdges(grid.r),
-      z: cellEdges(grid.z),
-      sides: {
-        inner: part.innerRadius > 0 ? bore : null,
-        outer: open,
-        low: grid.half ? null : open,
-        high: open,
-      },
-    },
-    input.startTemperatureC,
-  );
-}
-
-/** Where surface and core are read: cells, and the half cell to the surface. */
-interface Places {
-  surface: number;
-  core: number;
-  half: number;
-  transfer: SurfaceTransfer;
-}
-
-function placesOf(run: CoilAndPart, state: ConductionState, side: FacingSide): Places {
-  const { grid, nr, nz } = state;
-  const nearest = (edges: Float64Array, x: number) => {
-    let best = 0;
-    for (let k = 0; k + 1 < edges.length; k++) if ((edges[k] as number) <= x) best = k;
-    return Math.min(best, edges.length - 2);
-  };
-  const width = (edges: Float64Array, k: number) => (edges[k + 1] as number) - (edges[k] as number);
-  const none: SurfaceTransfer = { convection: 0, emissivity: 0 };
-  if (side === 'outer' || side === 'bore') {
-    const row = nearest(grid.z, 0) * nr;
-    const at = side === 'outer' ? nr - 1 : 0;
-    const transfer = (side === 'outer' ? grid.sides.outer : grid.sides.inner) ?? none;
-    return { surface: row + at, core: row + (nr - 1 - at), half: width(grid.r, at) / 2, transfer };
-  }
-  const rings = run.prepared.rings.rings;
-  const column = nearest(grid.r, rings.reduce((sum, ring) => sum + ring.radius, 0) / rings.length);
-  const at = side === 'low' ? 0 : nz - 1;
-  const transfer = (side === 'low' ? grid.sides.low : grid.sides.high) ?? none;
-  return {
-    surface: at * nr + column,
-    core: (nz - 1 - at) * nr + column,
-    half: width(grid.z, at) / 2,
-    transfer,
-  };
-}
-
-/** Volume-weighted mean temperature of each element's four cells. */
-function elementTemperatures(run: CoilAndPart, state: ConductionState): Float64Array {
-  const { nr, nz } = run.model.elements;
-  const out = new Float64Array(nr * nz);
-  const volume = new Float64Array(nr * nz);
-  for (let c = 0; c < state.temperature.length; c++) {
-    const at = (((c / state.nr) | 0) >> 1) * nr + ((c % state.nr) >> 1);
-    const v = state.volume[c] as number;
-    out[at] = (out[at] as number) + v * (state.temperature[c] as number);
-    volume[at] = (volume[at] as number) + v;
-  }
-  return out.map((sum, k) => sum / (volume[k] as number));
-}
-
-/** Temperature with a given enthalpy, by bisection. */
-function temperatureOf(material: Material, enthalpy: number, low: number, high: number): number {
-  let a = low;
-  let b = high;
-  for (let k = 0; k < 60; k++) {
-    const mid = 0.5 * (a + b);
-    if (material.enthalpy(mid) < enthalpy) a = mid;
-    else b = mid;
-  }
-  return 0.5 * (a + b);
-}
-
-/** Keeps at most 400 points: every other one goes when the list is full, never the first or last. */
-function keep(curve: HeatingPoint[], point: HeatingPoint, stride: { every: number; count: number }): void {
-  stride.count++;
-  if (stride.count % stride.every !== 0) return;
-  curve.push(point);
-  if (curve.length < MOST_POINTS) return;
-  const thinned = curve.filter((_, k) => k % 2 === 0);
-  curve.splice(0, curve.length, ...thinned);
-  stride.every *= 2;
-}
-
 /**
  * Heating of a part in its coil: the field solution with the part's temperature and saturation, and conduction
  * with surface losses, coupled. The fields are solved anew when the power-weighted drift of resistivity
@@ -186,59 +75,17 @@ export function runHeating(input: HeatingInput, watch: HeatingWatch = {}): Heati
   const run = new CoilAndPart(input);
   const side = facingSide(run.prepared.geometry, run.load);
   const state = thermalState(run, input, side);
-  const places = placesOf(run, state, side);
   const { material } = run;
   const times = run.model.elements.grid.half ? 2 : 1;
-  const enthalpyOfPart = () => {
-    let sum = 0;
-    let volume = 0;
-    for (let c = 0; c < state.temperature.length; c++) {
-      const v = state.volume[c] as number;
-      sum += v * material.enthalpy(state.temperature[c] as number);
-      volume += v;
-    }
-    return { mean: sum / volume, total: sum * material.density * times };
-  };
-  const begin = enthalpyOfPart().total;
+  const recorder = new HeatingRecorder(
+    state,
+    placesOf(run, state, side),
+    material,
+    input.ambientTemperatureC,
+    times,
+  );
   let electric: ElectricState = run.solve(elementTemperatures(run, state));
-  const pointAt = (time: number): HeatingPoint => {
-    let low = Number.POSITIVE_INFINITY;
-    let high = Number.NEGATIVE_INFINITY;
-    for (const t of state.temperature) {
-      low = Math.min(low, t);
-      high = Math.max(high, t);
-    }
-    const cell = state.temperature[places.surface] as number;
-    return {
-      time,
-      surfaceC: surfaceTemperature(
-        cell,
-        places.half,
-        places.transfer,
-        material.conductivity(cell),
-        input.ambientTemperatureC,
-      ),
-      meanC: temperatureOf(material, enthalpyOfPart().mean, low - 1, high + 1),
-      coreC: state.temperature[places.core] as number,
-      hottestC: high,
-      partPower: electric.partPower,
-      totalPower: electric.totalPower,
-      surfaceLoss: state.loss * times,
-      current: electric.current,
-      voltage: electric.voltage,
-      inductance: electric.inductance,
-      resistance: electric.resistance,
-      frequency: electric.frequency,
-    };
-  };
-  const curve: HeatingPoint[] = [];
-  const stride = { every: 1, count: 0 };
-  let point = pointAt(0);
-  keep(curve, point, stride);
-  const curie = material.magnetisation?.curieC ?? null;
-  const real = curie !== null && curie < 5000 ? curie : null;
-  const passed = { surface: null as number | null, core: null as number | null };
-  const balance = { input: 0, stored: 0, lost: 0, closure: 0, coilLoss: 0 };
+  recorder.record(0, 0, electric);
   let time = 0;
   let steps = 0;
   let dt = firstStep(electric.source, state, material, input.time);
@@ -254,39 +101,13 @@ export function runHeating(input: HeatingInput, watch: HeatingWatch = {}): Heati
     }
     const elements = elementTemperatures(run, state);
     if (run.drift(elements) > DRIFT) electric = run.solve(elements);
-    let step = Math.min(dt, input.time / LEAST_STEPS, input.time - time);
-    let result = conductionStep(state, material, electric.source, step, input.ambientTemperatureC);
-    let largest =
-      result === null ? Number.POSITIVE_INFINITY : largestChange(state.temperature, result.temperature);
-    for (let retry = 0; (result === null || largest > STEP_MOST) && retry < 40; retry++) {
-      step *= 0.4;
-      result = conductionStep(state, material, electric.source, step, input.ambientTemperatureC);
-      largest =
-        result === null ? Number.POSITIVE_INFINITY : largestChange(state.temperature, result.temperature);
-    }
-    if (result === null) {
-      throw new InductionInputError(
-        'not-converged',
-        'drive',
-        'The temperature step did not settle: power is out of proportion to the part.',
-      );
-    }
-    const before = point;
-    state.temperature.set(result.temperature);
-    state.loss = result.loss;
-    time += step;
+    const wanted = Math.min(dt, input.time / LEAST_STEPS, input.time - time);
+    const taken = takeStep(state, material, electric.source, wanted, input.ambientTemperatureC);
+    time += taken.step;
     steps++;
-    balance.input += electric.partPower * step;
-    balance.coilLoss += (electric.totalPower - electric.partPower) * step;
-    balance.lost += result.loss * times * step;
-    point = pointAt(time);
-    if (real !== null) {
-      passed.surface ??= crossing(before.surfaceC, point.surfaceC, before.time, time, real);
-      passed.core ??= crossing(before.coreC, point.coreC, before.time, time, real);
-    }
-    keep(curve, point, stride);
+    const point = recorder.record(time, taken.step, electric);
     watch.onProgress?.(time / input.time, point);
-    dt = step * Math.min(1.6, Math.max(0.4, STEP_AIM / Math.max(largest, 1e-6)));
+    dt = taken.step * Math.min(1.6, Math.max(0.4, STEP_AIM / Math.max(taken.largest, 1e-6)));
     if (material.solidusC !== null && point.hottestC >= material.solidusC) {
       end = 'melting';
       break;
@@ -296,16 +117,13 @@ export function runHeating(input: HeatingInput, watch: HeatingWatch = {}): Heati
       break;
     }
   }
-  if (curve[curve.length - 1] !== point) curve.push(point);
-  if (curve.length > MOST_POINTS) curve.splice(curve.length - 2, 1);
-  balance.stored = enthalpyOfPart().total - begin;
-  balance.closure = balance.input > 0 ? (balance.stored + balance.lost) / balance.input - 1 : 0;
+  recorder.finish();
   return {
-    curve,
-    curieSurfaceTime: passed.surface,
-    curieCoreTime: passed.core,
-    curieTemperatureC: real,
-    balance,
+    curve: recorder.curve,
+    curieSurfaceTime: recorder.curieSurface,
+    curieCoreTime: recorder.curieCore,
+    curieTemperatureC: recorder.curieC,
+    balance: recorder.balance,
     end,
     time,
     fieldSolutions: run.solutions,
@@ -314,6 +132,33 @@ export function runHeating(input: HeatingInput, watch: HeatingWatch = {}): Heati
     method: 'field solution coupled with conduction (implicit, enthalpy form)',
     assumptions: assumptionsOf(input, material, side),
   };
+}
+
+/** One accepted step: shortened until it settles and no cell changes by more than 30 K. */
+function takeStep(
+  state: ConductionState,
+  material: Material,
+  source: Float64Array,
+  wanted: number,
+  ambientC: number,
+): { step: number; largest: number } {
+  let step = wanted;
+  for (let attempt = 0; attempt < 40; attempt++) {
+    const result = conductionStep(state, material, source, step, ambientC);
+    const largest =
+      result === null ? Number.POSITIVE_INFINITY : largestChange(state.temperature, result.temperature);
+    if (result !== null && largest <= STEP_MOST) {
+      state.temperature.set(result.temperature);
+      state.loss = result.loss;
+      return { step, largest };
+    }
+    step *= 0.4;
+  }
+  throw new InductionInputError(
+    'not-converged',
+    'drive',
+    'The temperature step did not settle: the power is out of proportion to the part.',
+  );
 }
 
 function firstStep(source: Float64Array, state: ConductionState, material: Material, total: number): number {
@@ -331,11 +176,6 @@ function largestChange(a: Float64Array, b: Float64Array): number {
   for (let c = 0; c < a.length; c++)
     largest = Math.max(largest, Math.abs((a[c] as number) - (b[c] as number)));
   return largest;
-}
-
-function crossing(t0: number, t1: number, from: number, to: number, level: number): number | null {
-  if (t0 >= level || t1 < level) return null;
-  return from + ((to - from) * (level - t0)) / Math.max(1e-9, t1 - t0);
 }
 
 function assumptionsOf(input: HeatingInput, material: Material, side: FacingSide): string[] {
