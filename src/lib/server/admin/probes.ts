@@ -6,7 +6,7 @@ import type { Database } from '../db/index.ts';
 import { serviceProbe } from '../db/schema/platform.ts';
 import { objectStore } from '../files/index.ts';
 import { log } from '../log/index.ts';
-import { paymentService } from '../money/service.ts';
+import { paymentService } from '../money/index.ts';
 
 /** One outside service and how to ask whether it answers. Throws when it does not. */
 export interface Probe {

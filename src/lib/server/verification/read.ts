@@ -1,5 +1,6 @@
 import { and, asc, desc, eq, inArray } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
+import { addDays, dateIn } from '../../domain/dates.ts';
 import { AppError } from '../../domain/errors.ts';
 import { can, requireAccess } from '../access/index.ts';
 import { businessNow } from '../adapters/clock.ts';
@@ -142,6 +143,8 @@ export async function verificationCaseFor(db: Database, actor: Actor, caseId: st
     decidedBy: nameOf(row.decidedBy),
     documents: await documentsOf(db, caseId),
     earlier: others.filter((other) => other.id !== row.id),
+    /** A year from now in the zone of the fabricator. */
+    suggestedDate: addDays(dateIn(about.timeZone, await businessNow(db)), 365),
   };
 }
 

@@ -1,7 +1,5 @@
-import { addDays, dateIn } from '$lib/domain/dates.ts';
 import { AppError } from '$lib/domain/errors.ts';
 import { listsOf, refuseInput, verifyInput } from '$lib/schemas/forms/verification.ts';
-import { businessNow } from '$lib/server/adapters/clock.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, fieldMessages, formAction, loading, parseInput } from '$lib/server/http/index.ts';
 import {
@@ -16,13 +14,7 @@ export const load: PageServerLoad = (event) =>
   loading(async () => {
     const actor = actorOf(event);
     const found = await verificationCaseFor(database(), actor, event.params.id);
-    const today = dateIn(found.company.timeZone, await businessNow(database()));
-    return {
-      ...found,
-      suggestedDate: addDays(today, 365),
-      unitSet: actor.unitSet,
-      timeZone: actor.timeZone,
-    };
+    return { ...found, unitSet: actor.unitSet, timeZone: actor.timeZone };
   });
 
 export const actions: Actions = {
