@@ -6,10 +6,10 @@ import { copperPath, type CopperPath } from '../shop/path.ts';
 import { shopSheet } from '../shop/shop-sheet.ts';
 import { InductionInputError } from '../input-error.ts';
 import { assumeMachine } from './assume.ts';
-import { buildModels, gapBetweenTurns, type Models } from './build-models.ts';
-import { coilFigures, leadFigures, loadedFigures } from './coil-figures.ts';
-import type { CoilSource } from './coil-model.ts';
+import { buildModels, type Models } from './build-models.ts';
+import { loadedFigures } from './coil-figures.ts';
 import type { CheckContext } from './context.ts';
+import { addBare } from './examine-bare.ts';
 import { halfBand } from './figure.ts';
 import { heatedArea, heatingFigures, surfaceLossDensity } from './heating-figures.ts';
 import {
@@ -23,7 +23,6 @@ import {
 } from './ladder.ts';
 import { mechanicsFigures } from './mechanics-figures.ts';
 import { resolveGeometry, type Geometry } from './resolve.ts';
-import { coilSources } from './sensitivity.ts';
 import { skinFigures, surfaceFieldOf } from './skin-figures.ts';
 import { Solver, type CheckOptions } from './solver.ts';
 import { surroundingsFigures } from './surroundings-figures.ts';
@@ -163,72 +162,6 @@ export function tapShare(answer: ImpedanceAnswer): number {
   const n = answer.turnVoltage.length;
   const half = answer.turnVoltage.reduce((sum, v, i) => sum + v * Math.min(1, Math.max(0, n / 2 - i)), 0);
   return total > 0 ? half / total : 0.5;
-}
-
-function addBare(context: CheckContext, solver: Solver, options: CheckOptions, guess: number | null): void {
-  const { requirement, geometry } = context;
-  if (!geometry.section || !geometry.resolved) return;
-  const supply = requirement.machine.supply;
-  const frequency = context.fittedRow?.points.hot.frequency ?? guess ?? supply.frequencyMin ?? 20e3;
-  const ask = (f: number, includeLeads: boolean) =>
-    solver.ask({
-      coil: geometry.coil,
-      part: null,
-      frequency: f,
-      state: 'cold',
-      current: 1,
-      includeLeads,
-      setting: options.setting,
-    });
-  const answer = ask(frequency, true);
-  if (!answer) return;
-  context.bareAnswer = answer;
-  const sources = bareSources(solver, geometry, frequency, answer, options);
-  context.bare = coilFigures(answer, frequency, sources);
-  const test = requirement.acceptance.find((line) => line.kind === 'inductance')?.testFrequency ?? null;
-  const atTest = test === null || Math.abs(test / frequency - 1) < 1e-6 ? answer : ask(test, true);
-  if (atTest) context.bareAtTest = coilFigures(atTest, test ?? frequency, sources);
-  if (requirement.coil.leads && requirement.coil.leads.length > 0) {
-    const without = ask(frequency, false);
-    if (without) context.leads = leadFigures(answer, without);
-  }
-  if (geometry.rings) {
-    const cheap = cheapBareInductance(geometry.rings);
-    const own = answer.inductance - (context.leads?.inductance.value ?? 0);
-    context.sanity = { inductance: cheap, difference: cheap / own - 1 };
-  }
-}
-
-function bareSources(
-  solver: Solver,
-  geometry: Geometry,
-  frequency: number,
-  answer: ImpedanceAnswer,
-  options: CheckOptions,
-): CoilSource[] {
-  if (options.bands === false) {
-    const shift = {
-      inductance: answer.inductanceError,
-      coilResistance: answer.resistanceError,
-      loadResistance: 0,
-    };
-    return [{ name: 'error of the method', variation: { value: answer.inductanceError, unit: '1' }, shift }];
-  }
-  return coilSources(solver, {
-    question: {
-      coil: geometry.coil,
-      part: null,
-      frequency,
-      state: 'cold',
-      current: 1,
-      includeLeads: true,
-      setting: options.setting,
-    },
-    nominal: answer,
-    material: null,
-    magnetic: false,
-    gapBetweenTurns: gapBetweenTurns(geometry),
-  });
 }
 
 function addChain(context: CheckContext, models: Models): void {

@@ -7,11 +7,12 @@ import {
   temperatureRise,
   wallTemperature,
   type Passage,
+  type PassageFlow,
 } from '../cooling/passage.ts';
 import type { CopperPath } from '../shop/path.ts';
 import type { Assumption } from './assume.ts';
 import { figure, type Effect } from './figure.ts';
-import type { Coil, CoolingSupply, Figure, WaterFigures } from './types.ts';
+import type { Coil, CoolingSupply, WaterFigures } from './types.ts';
 
 export const waterDefaults = { inletC: 25, supplyPressure: 4e5, returnPressure: 1e5, outletLimitC: 50 };
 /** Largest rise of the trade where no outlet limit is nearer, K (common practice: 10 to 25 K). */
@@ -100,80 +101,92 @@ export function passageOf(coil: Coil, path: CopperPath, circuits: number): Passa
   return { ...bore, length, coilDiameter: path.coilDiameter };
 }
 
+interface SolvedWater {
+  state: PassageFlow;
+  flow: number;
+  rise: number;
+}
+
+/** Flow and rise with properties at the mean temperature, found in a few rounds; null where no water flows. */
+function solveWater(input: WaterInput, passage: Passage, duty: number): SolvedWater | null {
+  const { water } = input;
+  const circuits = input.coil.waterCircuits;
+  const stateAt = (t: number) =>
+    water.flow !== null
+      ? flowThrough(passage, water.flow / circuits, t)
+      : flowAtPressure(passage, water.differential, t);
+  let state = stateAt(water.inletC + 8);
+  for (let i = 0; i < 4; i++) {
+    const next = temperatureRise(duty, state.flow * circuits, water.inletC).meanC;
+    if (!Number.isFinite(next)) break;
+    state = stateAt(Math.min(100, next));
+  }
+  const flow = state.flow * circuits;
+  const { rise } = temperatureRise(duty, flow, water.inletC);
+  return Number.isFinite(rise) ? { state, flow, rise } : null;
+}
+
+/** Effects of duty and flow, as shares. */
+function waterEffects(input: WaterInput, passage: Passage, state: PassageFlow, duty: number) {
+  const { copperHeat, partHeat, coil, water } = input;
+  const watts = (name: string, band: number): Effect => ({
+    name,
+    variation: { value: band, unit: 'W' },
+    change: band,
+  });
+  const dutyEffects = [
+    watts('loss in copper and leads', copperHeat.band),
+    watts('heat from the part', partHeat.band),
+  ];
+  // Δp is given: v goes with 1/√f, so half the correlations' spread. Flow is given: the spread is in Δp.
+  const known = water.flow !== null;
+  const friction = state.friction.band;
+  const shares: Effect[] = [
+    {
+      name: 'friction in the coiled tube',
+      variation: { value: friction, unit: '1' },
+      change: known ? 0.02 : friction / 2,
+    },
+    {
+      name: 'wall of the tube',
+      variation: { value: 0.1 * coil.tube.wall, unit: 'm' },
+      change: known ? 0 : (0.5 * coil.tube.wall) / passage.hydraulicDiameter,
+    },
+  ];
+  const scaled = (list: readonly Effect[], by: number) =>
+    list.map((one) => ({ ...one, change: one.change * by }));
+  return {
+    duty: dutyEffects,
+    flow: (scale: number) => scaled(shares, scale),
+    rise: (rise: number) => [...scaled(dutyEffects, rise / duty), ...scaled(shares, rise)],
+    drop: (drop: number) => (known ? [{ ...(shares[0] as Effect), change: drop * friction }] : []),
+  };
+}
+
+/** @returns null for a solid conductor, and where no water flows */
 export function waterFigures(input: WaterInput): WaterFigures | null {
   const { coil, path, water } = input;
   const passage = passageOf(coil, path, coil.waterCircuits);
   if (!passage) return null;
   const duty = input.copperHeat.value + input.partHeat.value;
-  const dutyEffects: Effect[] = [
-    {
-      name: 'loss in copper and leads',
-      variation: { value: input.copperHeat.band, unit: 'W' },
-      change: input.copperHeat.band,
-    },
-    {
-      name: 'heat from the part',
-      variation: { value: input.partHeat.band, unit: 'W' },
-      change: input.partHeat.band,
-    },
-  ];
-  const circuits = coil.waterCircuits;
-  // Properties at the mean temperature, found in a few rounds.
-  let meanC = water.inletC + 8;
-  const stateAt = (t: number) =>
-    water.flow !== null
-      ? flowThrough(passage, water.flow / circuits, t)
-      : flowAtPressure(passage, water.differential, t);
-  let state = stateAt(meanC);
-  for (let i = 0; i < 4; i++) {
-    const next = temperatureRise(duty, state.flow * circuits, water.inletC).meanC;
-    if (!Number.isFinite(next)) break;
-    meanC = Math.min(100, next);
-    state = stateAt(meanC);
-  }
-  const flow = state.flow * circuits;
-  const { rise } = temperatureRise(duty, flow, water.inletC);
-  if (!Number.isFinite(rise)) return null;
-  const known = water.flow !== null;
-  // Δp is given: v goes with 1/√f, so half the correlations' spread. Flow is given: the spread is in Δp.
-  const frictionShare = state.friction.band;
-  const flowShare = known ? 0.02 : frictionShare / 2;
-  const friction: Effect = {
-    name: 'friction in the coiled tube',
-    variation: { value: frictionShare, unit: '1' },
-    change: 0,
-  };
-  const bore: Effect = {
-    name: 'wall of the tube',
-    variation: { value: 0.1 * coil.tube.wall, unit: 'm' },
-    change: 0,
-  };
-  const boreShare = known ? 0 : (0.2 * coil.tube.wall * 2.5) / passage.hydraulicDiameter;
-  const flowEffects = (scale: number): Effect[] => [
-    { ...friction, change: scale * flowShare },
-    { ...bore, change: scale * boreShare },
-  ];
-  const riseEffects: Effect[] = [
-    ...dutyEffects.map((e) => ({ ...e, change: (e.change / duty) * rise })),
-    ...flowEffects(rise),
-  ];
+  const solved = solveWater(input, passage, duty);
+  if (!solved) return null;
+  const { state, flow, rise } = solved;
+  const effects = waterEffects(input, passage, state, duty);
   const outlet = water.inletC + rise;
   const concentration = Math.max(
     1,
     ...input.turnLossShare.map((share) => share * input.turnLossShare.length),
   );
-  const wall = wallTemperature(passage, state, duty / circuits, outlet, concentration);
-  const method = state.friction.method;
-  const of = (value: number, unit: Figure['unit'], how: string, effects: Effect[]) =>
-    figure(value, unit, how, effects);
-  const limitRise = Math.max(1, Math.min(mostRise, water.outletLimitC - water.inletC));
-  const differential = known ? state.pressureDrop : water.differential;
+  const wall = wallTemperature(passage, state, duty / coil.waterCircuits, outlet, concentration);
+  const { method, regime } = state.friction;
+  const known = water.flow !== null;
   return {
     duty: figure(
       duty,
       'W',
       'copper and leads, plus radiation and convection taken up from the part',
-      dutyEffects,
+      effects.duty,
       {
         least: 0,
         assumptions: ['Continuous running at deliverable power.'],
@@ -183,39 +196,37 @@ export function waterFigures(input: WaterInput): WaterFigures | null {
       flow,
       'm3/s',
       known ? 'entered' : `${method}, at the differential pressure`,
-      flowEffects(flow),
+      effects.flow(flow),
       {
         least: 0,
         assumptions: ['Tube friction only: hoses, fittings and tight bends are not included.'],
       },
     ),
-    velocity: of(state.velocity, 'm/s', 'flow over bore area', flowEffects(state.velocity)),
-    reynolds: of(state.reynolds, '1', 'ρ v d/µ at the mean water temperature', flowEffects(state.reynolds)),
-    temperatureRise: of(rise, 'K', 'duty over ρ·cp·flow', riseEffects),
-    outletTemperature: of(outlet, 'C', 'inlet plus rise', riseEffects),
-    wallTemperature: of(
+    velocity: figure(state.velocity, 'm/s', 'flow over bore area', effects.flow(state.velocity)),
+    reynolds: figure(
+      state.reynolds,
+      '1',
+      'ρ v d/µ at the mean water temperature',
+      effects.flow(state.reynolds),
+    ),
+    temperatureRise: figure(rise, 'K', 'duty over ρ·cp·flow', effects.rise(rise)),
+    outletTemperature: figure(outlet, 'C', 'inlet plus rise', effects.rise(rise)),
+    wallTemperature: figure(
       wall,
       'C',
-      state.friction.regime === 'laminar'
-        ? 'Schmidt, coiled tube, laminar'
-        : 'Gnielinski with the coil’s friction',
+      regime === 'laminar' ? 'Schmidt, coiled tube, laminar' : 'Gnielinski with the coil’s friction',
       [
-        ...riseEffects,
+        ...effects.rise(rise),
         { name: 'film coefficient', variation: { value: 0.25, unit: '1' }, change: 0.25 * (wall - outlet) },
       ],
     ),
-    pressureDrop: of(
-      state.pressureDrop,
-      'Pa',
-      method,
-      known ? [{ ...friction, change: state.pressureDrop * frictionShare }] : [],
-    ),
+    pressureDrop: figure(state.pressureDrop, 'Pa', method, effects.drop(state.pressureDrop)),
     circuitsAdvised: circuitsAdvised(
       (n) => passageOf(coil, path, n) ?? passage,
       duty,
-      differential,
+      known ? state.pressureDrop : water.differential,
       water.inletC,
-      limitRise,
+      Math.max(1, Math.min(mostRise, water.outletLimitC - water.inletC)),
       Math.max(coil.waterCircuits, Math.min(12, Math.ceil(path.turns))),
     ),
   };

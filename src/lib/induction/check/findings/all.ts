@@ -14,9 +14,9 @@ import {
 } from './electrical-limits.ts';
 import { frequencyBand, noRowFits } from './frequency.ts';
 import { gapLarge, gapSmall, turnInsulation } from './gaps.ts';
+import { impossibleDimensions } from './dimensions.ts';
 import {
   disagreeingMass,
-  impossibleDimensions,
   notCoupling,
   openTurns,
   outsideMethod,
@@ -37,6 +37,7 @@ import {
 import { unitDoubts } from './unit-doubt.ts';
 import {
   belowInterlock,
+  noWater,
   waterFast,
   waterHot,
   waterLaminar,
@@ -79,6 +80,7 @@ export const rules: readonly Rule[] = [
   missingHanding,
   waterShort,
   waterPressureShort,
+  noWater,
   waterHot,
   waterFast,
   waterLaminar,

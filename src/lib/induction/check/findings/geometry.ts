@@ -1,124 +1,8 @@
-import type { InductionInputCode } from '../../input-error.ts';
 import { plural } from './words.ts';
 import type { CheckContext, Rule } from '../context.ts';
-import type { Finding, FindingCode } from '../types.ts';
+import type { Finding } from '../types.ts';
 import { finding, quantity } from './finding.ts';
-
-const codes: Partial<Record<InductionInputCode, FindingCode>> = {
-  'turns-open': 'turns-open',
-  'turns-overlap': 'turns-touch',
-  'part-overlaps-coil': 'part-touches-coil',
-  'outside-method': 'outside-method',
-  'too-many-unknowns': 'outside-method',
-  'not-converged': 'outside-method',
-  'does-not-conduct': 'part-does-not-couple',
-};
-/** Codes that another rule says better. */
-const elsewhere: FindingCode[] = [
-  'turns-touch',
-  'part-touches-coil',
-  'turns-open',
-  'outside-method',
-  'part-does-not-couple',
-];
-
-const problemsOf = (context: CheckContext) => [...context.geometry.problems, ...context.refusals];
-
-/** dimension-impossible: sizes that contradict each other or are no numbers. */
-export const impossibleDimensions: Rule = (context) => {
-  const out: Finding[] = context.geometry.notNumbers.map((path) =>
-    finding({
-      code: 'dimension-impossible',
-      severity: 'blocker',
-      subject: path,
-      template: `The value at ${path} is not a number.`,
-      remedy: 'Enter a number with its unit.',
-      source: 'arithmetic',
-    }),
-  );
-  for (const problem of problemsOf(context)) {
-    const code = codes[problem.code] ?? 'dimension-impossible';
-    if (elsewhere.includes(code)) continue;
-    out.push(
-      finding({
-        code,
-        severity: 'blocker',
-        subject: problem.field,
-        template: problem.message.replaceAll('{', '(').replaceAll('}', ')'),
-        remedy: 'Correct the size, or the one it contradicts.',
-        source: 'geometry',
-      }),
-    );
-  }
-  const { coil, part, process } = context.requirement;
-  if (process.targetTemperatureC <= process.startTemperatureC) {
-    out.push(
-      finding({
-        code: 'dimension-impossible',
-        severity: 'blocker',
-        subject: 'process.targetTemperatureC',
-        figure: quantity(process.targetTemperatureC, 'C'),
-        limit: quantity(process.startTemperatureC, 'C'),
-        limitIsLeast: true,
-        template: 'The target of {figure} is not above the start temperature of {limit}.',
-        remedy: 'Enter the temperature the part must reach.',
-        source: 'arithmetic',
-      }),
-    );
-  }
-  const thickness = part.form === 'disc' ? part.length : (part.outsideDiameter - part.insideDiameter) / 2;
-  if (part.depthWanted !== null && thickness > 0 && part.depthWanted > thickness) {
-    out.push(
-      finding({
-        code: 'dimension-impossible',
-        severity: 'blocker',
-        subject: 'part.depthWanted',
-        figure: quantity(part.depthWanted, 'm'),
-        limit: quantity(thickness, 'm'),
-        template: 'The depth wanted, {figure}, is more than the part has: {limit}.',
-        remedy: 'Leave the depth empty to heat the part through.',
-        fixes: [],
-        source: 'geometry',
-      }),
-    );
-  }
-  if (part.heatedLength !== null && part.heatedLength > part.length * (1 + 1e-9)) {
-    out.push(
-      finding({
-        code: 'dimension-impossible',
-        severity: 'blocker',
-        subject: 'part.heatedLength',
-        figure: quantity(part.heatedLength, 'm'),
-        limit: quantity(part.length, 'm'),
-        template: 'The heated length, {figure}, is more than the part’s length, {limit}.',
-        remedy: 'Enter the length of the zone that must get hot.',
-        fixes: [{ label: 'Heat the whole length', field: 'part.heatedLength', value: part.length }],
-        source: 'geometry',
-      }),
-    );
-  }
-  if (
-    coil.leads &&
-    coil.leads.length > 0 &&
-    context.geometry.section &&
-    coil.leads.spacing < 2 * context.geometry.section.halfAxial
-  ) {
-    out.push(
-      finding({
-        code: 'dimension-impossible',
-        severity: 'blocker',
-        subject: 'coil.leads.spacing',
-        figure: quantity(coil.leads.spacing, 'm'),
-        limit: quantity(2 * context.geometry.section.halfAxial, 'm'),
-        limitIsLeast: true,
-        template: 'The leads, {figure} apart between centres, overlap: the tube is {limit} wide.',
-        remedy: 'Set the leads further apart than the tube is wide.',
-        source: 'geometry',
-      }),
-    );
-  }
-  return out;
-};
+import { problemCodes, problemsOf } from './problems.ts';
 
 /** turns-open: the number of turns is left to a proposal. */
 export const openTurns: Rule = (context) => {
@@ -253,7 +137,7 @@ export const outsideMethod: Rule = (context) => {
     );
   }
   for (const problem of problemsOf(context)) {
-    if (codes[problem.code] !== 'outside-method' || !round || shape === 'drawing') continue;
+    if (problemCodes[problem.code] !== 'outside-method' || !round || shape === 'drawing') continue;
     say(
       problem.field,
       problem.message.replaceAll('{', '(').replaceAll('}', ')'),

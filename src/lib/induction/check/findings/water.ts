@@ -1,3 +1,4 @@
+import { boreOf } from '../../cooling/bore.ts';
 import type { Rule } from '../context.ts';
 import { commonPractice, finding, quantity } from './finding.ts';
 
@@ -59,6 +60,27 @@ export const waterPressureShort: Rule = (context) => {
       remedy:
         'More circuits or a larger bore let the flow through; leave the flow empty to have it computed.',
       source: needed.method,
+    }),
+  ];
+};
+
+/** water-short: no water at all, by the pressures or flow entered or a conductor without bore. */
+export const noWater: Rule = (context) => {
+  if (context.water || !context.fittedRow || !context.path) return [];
+  const solid = boreOf(context.requirement.coil.tube) === null;
+  return [
+    finding({
+      code: 'water-short',
+      severity: 'blocker',
+      safety: true,
+      subject: solid ? 'coil.tube.wall' : 'machine.water',
+      template: solid
+        ? 'The conductor has no bore: it cannot be cooled by water.'
+        : 'No water flows by the pressures or the flow entered: the coil would burn out.',
+      remedy: solid
+        ? 'Take a tube, or braze a cooling tube to the conductor and enter that.'
+        : 'Enter a supply pressure above the return pressure, or the flow.',
+      source: 'heat balance of the water',
     }),
   ];
 };
