@@ -37,6 +37,8 @@ export interface MoneyWorld {
   paymentsWith(options: { timeoutMs?: number; maxNetworkRetries?: number }): Payments;
   stripe: Stripe;
   url: string;
+  /** Of the endpoint for payments, to sign events by hand. */
+  webhookSecret: string;
   mails: SentMail[];
   /** Stops taking webhooks (as a dead endpoint does) while false. */
   webhooks: { up: boolean; received: number; raw: { body: string; signature: string }[] };
@@ -156,6 +158,7 @@ export async function moneyWorld(): Promise<MoneyWorld> {
     paymentsWith,
     stripe,
     url: running.url,
+    webhookSecret: endpoint.secret ?? '',
     mails,
     webhooks,
     control,

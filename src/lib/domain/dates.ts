@@ -49,7 +49,7 @@ export function addDays(date: string, days: number): string {
 /** Adds working days (Monday to Friday; public holidays are not known and not claimed). */
 export function addWorkingDays(date: string, days: number): string {
   let current = date;
-  for (let left = days; left > 0; ) {
+  for (let left = days; left > 0;) {
     current = addDays(current, 1);
     const weekday = new Date(`${current}T00:00:00Z`).getUTCDay();
     if (weekday !== 0 && weekday !== 6) left -= 1;
@@ -66,4 +66,13 @@ export function formatInstant(at: number, zone: string, withTime = true): string
     year: 'numeric',
     ...(withTime ? { hour: '2-digit', minute: '2-digit', hourCycle: 'h23' } : {}),
   }).format(at);
+}
+
+/**
+ * An instant at which something ends: midnight is told as 24:00 of the day that ends, `24:00 on 12 Mar 2027`,
+ * any other time as `12 Mar 2027, 14:05`.
+ */
+export function formatDeadline(at: number, zone: string): string {
+  const text = formatInstant(at, zone);
+  return text.endsWith('00:00') ? `24:00 on ${formatInstant(at - 1, zone, false)}` : text;
 }

@@ -48,6 +48,7 @@ export const verdictKind: Record<Verdict, StateKind> = {
 /** What a failed action of the order pages hands back. */
 export interface Failure {
   form: string;
+  code: string;
   message: string;
   fields: Record<string, string>;
   values: Record<string, string>;

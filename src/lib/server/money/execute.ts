@@ -36,6 +36,10 @@ function handlerOf(op: OperationRow): OperationHandler<unknown> {
   return handlers[op.kind] as OperationHandler<unknown>;
 }
 
+function isUnfinished(op: OperationRow): boolean {
+  return (unfinishedStates as readonly string[]).includes(op.state);
+}
+
 export type OperationOutcome = 'known' | 'failed' | 'waiting';
 
 /** Marks the operation as sent before the request leaves; undefined when it is finished or taken. */
@@ -46,7 +50,7 @@ async function claim(
 ): Promise<{ op: OperationRow; before: OperationRow } | undefined> {
   return transact(db, async (tx) => {
     const before = await operationById(tx, id);
-    if (!before || !(unfinishedStates as readonly string[]).includes(before.state)) return undefined;
+    if (!before || !isUnfinished(before)) return undefined;
     if (before.nextTryAt > now) return undefined;
     await updateOperation(tx, before, {
       state: 'sent',
@@ -102,6 +106,8 @@ export async function bookAnswer(
   } catch (error) {
     if (error instanceof AnswerDiffers) {
       await transact(db, async (tx) => {
+        const now = await operationById(tx, op.id);
+        if (!now || !isUnfinished(now)) return;
         await updateOperation(tx, op, {
           state: 'failed',
           errorCode: 'answer-differs',
@@ -190,6 +196,9 @@ async function wait(
   error: PaymentServiceError,
 ): Promise<void> {
   await transact(db, async (tx) => {
+    // Another run may have finished it meanwhile.
+    const now = await operationById(tx, op.id);
+    if (!now || !isUnfinished(now)) return;
     await updateOperation(tx, op, {
       state,
       errorCode: error.kind,
@@ -237,7 +246,7 @@ async function renew(
   }
   await transact(db, async (tx) => {
     const now = await operationById(tx, op.id);
-    if (!now || now.state === 'known') return;
+    if (!now || !isUnfinished(now)) return;
     await updateOperation(tx, op, {
       state: 'failed',
       errorCode: error.kind,
@@ -265,7 +274,7 @@ async function refuse(
 ): Promise<void> {
   await transact(db, async (tx) => {
     const now = await operationById(tx, op.id);
-    if (!now || now.state === 'known') return;
+    if (!now || !isUnfinished(now)) return;
     await updateOperation(tx, op, {
       state: 'failed',
       errorCode: error.code ?? error.kind,

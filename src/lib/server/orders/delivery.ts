@@ -1,6 +1,6 @@
 import { asc, eq } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
-import { dateIn, formatInstant } from '../../domain/dates.ts';
+import { dateIn, formatDeadline } from '../../domain/dates.ts';
 import { AppError } from '../../domain/errors.ts';
 import { businessNow } from '../adapters/clock.ts';
 import { newId } from '../adapters/ids.ts';
@@ -200,7 +200,7 @@ export async function markReceived(
         : 'The buyer has confirmed the receipt.',
     subject: 'received',
     ...(note ? { paragraphs: [note] } : {}),
-    facts: [['Inspection window ends', formatInstant(windowEndsAt, order.buyerZone)]],
+    facts: [['Inspection window ends', formatDeadline(windowEndsAt, order.buyerZone)]],
     onlyBuyer: [
       'Inspect the delivery within the window. Release it, return it with reasons, or open a dispute; otherwise the money is released when the window ends.',
     ],

@@ -1,6 +1,6 @@
 import { and, asc, count, eq } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
-import { formatInstant } from '../../domain/dates.ts';
+import { formatDeadline, formatInstant } from '../../domain/dates.ts';
 import { drawingMachine, revisionLetter } from '../../domain/drawing-states.ts';
 import { AppError } from '../../domain/errors.ts';
 import { businessNow } from '../adapters/clock.ts';
@@ -174,7 +174,7 @@ async function approved(tx: Tx, by: Actor, order: OrderRow, row: DrawingRow, now
       ['Approved by', by.name],
       ['At', formatInstant(now, order.buyerZone)],
       ['SHA-256 of the file', row.sha256],
-      ['Released at the latest', formatInstant(windowEndsAt, order.buyerZone)],
+      ['Released at the latest', formatDeadline(windowEndsAt, order.buyerZone)],
     ],
     action: 'Open the order',
     anchor: 'drawings',

@@ -88,7 +88,7 @@ async function item(reader: Reader, actor: Actor, order: OrderRow, now: number):
             next.owner === 'platform'
               ? 'the platform'
               : next.owner === side
-                ? 'us'
+                ? 'a colleague'
                 : next.owner === 'buyer'
                   ? order.buyerName
                   : order.fabricatorName,

@@ -1,5 +1,5 @@
 import type { Actor } from '../../domain/actor.ts';
-import { formatInstant } from '../../domain/dates.ts';
+import { formatDeadline } from '../../domain/dates.ts';
 import { AppError } from '../../domain/errors.ts';
 import { milestoneKindText } from '../../domain/milestone-states.ts';
 import { businessNow } from '../adapters/clock.ts';
@@ -83,7 +83,7 @@ export async function tellSubmitted(
     text: `The ${name.toLowerCase()} milestone was submitted.`,
     subject: `${name.toLowerCase()} submitted`,
     ...(note ? { paragraphs: [note] } : {}),
-    facts: [['Inspection window ends', formatInstant(windowEndsAt, order.buyerZone)]],
+    facts: [['Inspection window ends', formatDeadline(windowEndsAt, order.buyerZone)]],
     onlyBuyer: [
       'Release it, or return it with reasons, or open a dispute. When the window ends without any of these, the money is released.',
     ],

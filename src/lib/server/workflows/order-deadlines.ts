@@ -1,5 +1,5 @@
 import { and, asc, eq, inArray, lte } from 'drizzle-orm';
-import { dayMs, formatInstant, hourMs } from '../../domain/dates.ts';
+import { dayMs, formatDeadline, formatInstant, hourMs } from '../../domain/dates.ts';
 import { liveOrderStates } from '../../domain/order-states.ts';
 import type { Role } from '../../domain/roles.ts';
 import type { Wait, WaitKind } from '../../domain/waits.ts';
@@ -88,8 +88,8 @@ async function remind(tx: Tx, order: OrderRow, wait: Wait, dueAt: number, now: n
     by: 'system',
     side: null,
     milestoneId: wait.milestoneId,
-    text: `Reminder: ${wait.what} by ${formatInstant(dueAt, order.buyerZone)}.`,
-    subject: `${wait.what.toLowerCase()} by ${formatInstant(dueAt, order.buyerZone, false)}`,
+    text: `Reminder: ${wait.what} by ${formatDeadline(dueAt, order.buyerZone)}.`,
+    subject: `${wait.what.toLowerCase()} by ${formatInstant(dueAt - 1, order.buyerZone, false)}`,
     paragraphs: [`Otherwise: ${wait.otherwise}`],
     action: 'Open the order',
     anchor: wait.anchor,

@@ -17,6 +17,7 @@ import {
 } from '$lib/schemas/forms/order.ts';
 import { orderMessageInput } from '$lib/schemas/forms/messages.ts';
 import { newId } from '$lib/server/adapters/ids.ts';
+import { requireFreshSession } from '$lib/server/auth/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
 import { postMessage } from '$lib/server/messages/index.ts';
@@ -121,10 +122,12 @@ export const actions: Actions = {
   suspend: act('suspend', 'state', (_form, event, orderId) =>
     suspendOrder(database(), actorOf(event), { orderId }),
   ),
-  endByRight: act('endByRight', 'state', (form, event, orderId) =>
-    endByRight(database(), actorOf(event), { orderId, ...parseInput(groundForm, fields(form)) }),
-  ),
-  answerEnd: act('answerEnd', 'end', (form, event) =>
-    answerEnd(database(), actorOf(event), parseInput(answerEndForm, fields(form))),
-  ),
+  endByRight: act('endByRight', 'state', (form, event, orderId) => {
+    requireFreshSession(event.locals.session);
+    return endByRight(database(), actorOf(event), { orderId, ...parseInput(groundForm, fields(form)) });
+  }),
+  answerEnd: act('answerEnd', 'end', (form, event) => {
+    requireFreshSession(event.locals.session);
+    return answerEnd(database(), actorOf(event), parseInput(answerEndForm, fields(form)));
+  }),
 };

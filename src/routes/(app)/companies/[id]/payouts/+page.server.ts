@@ -1,5 +1,6 @@
 import { redirect } from '@sveltejs/kit';
 import { z } from 'zod';
+import { requireFreshSession } from '$lib/server/auth/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
 import { openOnboarding, refreshPayoutAccount, viewPayoutAccount } from '$lib/server/money/index.ts';
@@ -30,6 +31,7 @@ const onboardForm = z.object({
 
 export const actions: Actions = {
   onboard: formAction('onboard', async (form, event: RequestEvent) => {
+    requireFreshSession(event.locals.session);
     const { country } = parseInput(onboardForm, Object.fromEntries(form));
     const { url } = await openOnboarding(database(), actorOf(event), { companyId: event.params.id, country });
     redirect(303, url);

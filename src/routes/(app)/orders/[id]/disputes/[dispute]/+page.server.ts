@@ -2,6 +2,7 @@ import { redirect } from '@sveltejs/kit';
 import { AppError } from '$lib/domain/errors.ts';
 import { answerOfferForm, fileIdsForm, offerForm, statementForm } from '$lib/schemas/forms/order.ts';
 import { newId } from '$lib/server/adapters/ids.ts';
+import { requireFreshSession } from '$lib/server/auth/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import {
   addStatement,
@@ -44,9 +45,10 @@ export const actions: Actions = {
   offer: act('offer', (form, event, disputeId) =>
     offerSettlement(database(), actorOf(event), { disputeId, ...parseInput(offerForm, fields(form)) }),
   ),
-  answer: act('answer', (form, event) =>
-    answerOffer(database(), actorOf(event), parseInput(answerOfferForm, fields(form))),
-  ),
+  answer: act('answer', (form, event) => {
+    requireFreshSession(event.locals.session);
+    return answerOffer(database(), actorOf(event), parseInput(answerOfferForm, fields(form)));
+  }),
   appeal: act('appeal', (form, event, disputeId) =>
     appealDispute(database(), actorOf(event), { disputeId, ...parseInput(statementForm, fields(form)) }),
   ),

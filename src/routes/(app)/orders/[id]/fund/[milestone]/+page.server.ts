@@ -1,5 +1,6 @@
 import { redirect } from '@sveltejs/kit';
 import { AppError } from '$lib/domain/errors.ts';
+import { requireFreshSession } from '$lib/server/auth/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading } from '$lib/server/http/index.ts';
 import { fundMilestone } from '$lib/server/money/index.ts';
@@ -17,6 +18,7 @@ export const load: PageServerLoad = (event) =>
 
 export const actions: Actions = {
   default: formAction('fund', async (_form, event: RequestEvent) => {
+    requireFreshSession(event.locals.session);
     const { url } = await fundMilestone(database(), actorOf(event), {
       milestoneId: event.params.milestone ?? '',
     });

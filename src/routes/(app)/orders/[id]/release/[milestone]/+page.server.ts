@@ -1,6 +1,7 @@
 import { redirect } from '@sveltejs/kit';
 import { AppError } from '$lib/domain/errors.ts';
 import { milestoneForm } from '$lib/schemas/forms/order.ts';
+import { requireFreshSession } from '$lib/server/auth/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
 import { releaseMilestone } from '$lib/server/money/index.ts';
@@ -26,6 +27,7 @@ export const load: PageServerLoad = (event) =>
 
 export const actions: Actions = {
   default: formAction('release', async (form, event: RequestEvent) => {
+    requireFreshSession(event.locals.session);
     const { milestoneId, version } = parseInput(milestoneForm, Object.fromEntries(form));
     if (milestoneId !== event.params.milestone) throw new AppError('not-found');
     await releaseMilestone(database(), actorOf(event), { milestoneId, ...(version ? { version } : {}) });
