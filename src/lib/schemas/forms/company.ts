@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { addressPurposes } from '../../domain/address.ts';
 import { isCountryCode } from '../../domain/countries.ts';
 import { currencies, parseAmount } from '../../domain/money.ts';
 import { buyerRoles, fabricatorRoles, type Role } from '../../domain/roles.ts';
@@ -75,13 +76,6 @@ export const approvalLimitForm = z.object({
     }),
   version,
 });
-
-export const addressPurposes = ['delivery', 'invoice', 'works'] as const;
-export const addressPurposeText: Record<(typeof addressPurposes)[number], string> = {
-  delivery: 'Delivery',
-  invoice: 'Invoices',
-  works: 'Works',
-};
 
 const addressFields = {
   purpose: z.enum(addressPurposes, 'Choose what the address is for.'),

@@ -1,5 +1,6 @@
 import { and, eq, isNull, sql } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
+import type { AddressPurpose } from '../../domain/address.ts';
 import { AppError } from '../../domain/errors.ts';
 import { requireAccess } from '../access/index.ts';
 import { businessNow } from '../adapters/clock.ts';
@@ -8,8 +9,7 @@ import { audit } from '../audit/index.ts';
 import { transact, type Database, type Tx } from '../db/index.ts';
 import { companyAddress, type PostalAddress } from '../db/schema/companies.ts';
 
-export type AddressPurpose = 'delivery' | 'invoice' | 'works';
-export type { PostalAddress };
+export type { AddressPurpose, PostalAddress };
 
 /** More would be a list nobody reads. */
 const mostAddresses = 50;

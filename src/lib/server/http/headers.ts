@@ -40,6 +40,8 @@ export function secureHeaders(
   }
   headers.set('x-content-type-options', 'nosniff');
   headers.set('x-frame-options', 'DENY');
+  // Other hosts hear our name only, never a path with a token. `no-referrer` would take the Origin from our
+  // own forms as well, and they would be refused as foreign.
   headers.set('referrer-policy', 'strict-origin-when-cross-origin');
   headers.set('cross-origin-opener-policy', 'same-origin');
   headers.set('permissions-policy', 'camera=(), geolocation=(), microphone=(), payment=(), usb=()');
