@@ -2,6 +2,7 @@
 import type { Connection, TankCircuit } from '../tank/circuit.ts';
 import type { SupplyLimits } from '../tank/deliverable.ts';
 import { pushPullTankVoltage } from '../tank/push-pull.ts';
+import { bankAnswers } from './assume-bank.ts';
 import type { Machine, Quantity, Severity, TankKind } from './types.ts';
 
 /** One answer that was missing. */
@@ -73,13 +74,14 @@ export function assumeMachine(
       value: null,
       band: 0.5,
       severity: 'caution',
-      taken: 'a parallel tank',
+      taken: 'a parallel tank (the power’s band is widened)',
       howToFind: 'Read it in the supply’s circuit diagram or manual.',
     });
   }
   const limits = supplyLimits(machine, assume);
   const fixed = fixedCircuit(machine, assume, sources);
   const transformer = transformerOf(machine, coil, assume, sources);
+  bankAnswers(machine, assume);
   const { frequencyMin, frequencyMax } = machine.supply;
   if (frequencyMin === null || frequencyMax === null) {
     assume({
@@ -130,7 +132,8 @@ export function assumeMachine(
   };
 }
 
-type Assume = (a: Omit<Assumption, 'severity'> & { severity?: Assumption['severity'] }) => void;
+/** Records one assumption. */
+export type Assume = (a: Omit<Assumption, 'severity'> & { severity?: Assumption['severity'] }) => void;
 
 function supplyLimits(machine: Machine, assume: Assume): SupplyLimits {
   const s = machine.supply;
@@ -201,6 +204,16 @@ function fixedCircuit(machine: Machine, assume: Assume, sources: CircuitSource[]
     variation: { value: fixedInductance * band, unit: 'H' },
     apply: (c, sign) => ({ ...c, fixedInductance: c.fixedInductance + sign * fixedInductance * band }),
   });
+  if (f.strayCapacitance === null) {
+    assume({
+      field: 'machine.fixed.strayCapacitance',
+      name: 'stray capacitance across the tank',
+      value: null,
+      taken: 'none',
+      band: 0,
+      howToFind: 'Calibrate the machine; it matters with small banks only.',
+    });
+  }
   const fixedResistance = f.resistance ?? defaults.fixedResistance;
   const share = f.resistance === null ? 0.8 : 0.2;
   if (f.resistance === null) {

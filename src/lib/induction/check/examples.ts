@@ -34,7 +34,7 @@ export function exampleMachine(): Machine {
       inductance: 60e-9,
       inductanceBand: 0.15,
       resistance: 0.4e-3,
-      strayCapacitance: null,
+      strayCapacitance: 5e-9,
       calibration: null,
     },
     bank: {

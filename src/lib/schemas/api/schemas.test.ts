@@ -1,5 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { z } from 'zod';
+import { checkRequirement } from '../../induction/check/check-requirement.ts';
+import { impedanceSweep } from '../../induction/check/impedance-sweep.ts';
 import { checkRequestSchema, checkResultSchema } from './check.ts';
 import { exampleMachine, exampleRequirement } from './examples.ts';
 import { heatingRequestSchema, heatingStateSchema } from './heating.ts';
@@ -39,6 +41,25 @@ describe('API schemas', () => {
       coil: { ...exampleRequirement().coil, winding: { shape: 'knot' } },
     };
     expect(requirementSchema.safeParse(bad).success).toBe(false);
+  });
+
+  it('take what the check answers, with and without figures, and what the sweep answers', () => {
+    const requirement = exampleRequirement();
+    requirement.part.material = { kind: 'library', id: 'stainless-304' };
+    const check = checkRequirement(requirement, { setting: 'preview', bands: false });
+    expect(checkResultSchema.parse(check)).toEqual(check);
+    requirement.coil.winding = { shape: 'drawing', note: '' };
+    const without = checkRequirement(requirement, { setting: 'preview', bands: false });
+    expect(checkResultSchema.parse(without)).toEqual(without);
+    const sweep = impedanceSweep({
+      coil: exampleRequirement().coil,
+      part: null,
+      includeLeads: true,
+      frequencies: [2e4],
+      setting: 'preview',
+    });
+    if (!sweep.ok) throw new Error(sweep.message);
+    expect(impedanceResponseSchema.parse(sweep.result)).toEqual(sweep.result);
   });
 
   it('can be written as JSON schema with units in the descriptions', () => {

@@ -15,7 +15,7 @@ export const assumedValues: Rule = (context) => {
       template: a.value
         ? `The ${a.name} is not known: {value} ±{band:%} is taken.`
         : a.taken
-          ? `The ${a.name} is not known: ${a.taken} is taken, and the power’s band widened.`
+          ? `The ${a.name} is not known: ${a.taken} is taken.`
           : `The ${a.name} is not known and is left out of the figures.`,
       values,
       remedy: a.howToFind,
@@ -42,6 +42,21 @@ export const assumedValues: Rule = (context) => {
     tolerance('coil.pitchTolerance', 'pitch', shopTolerances.pitch);
   if (part.diameterTolerance === null)
     tolerance('part.diameterTolerance', 'part diameter', shopTolerances.partDiameter);
+  const { material } = context.geometry;
+  if (material && material.records.resistivity.standing === 'memory') {
+    const scatter = material.records.resistivity.uncertainty;
+    out.push(
+      finding({
+        code: 'assumed-value',
+        severity: 'note',
+        subject: 'part.material',
+        figure: quantity(scatter, '1'),
+        template: `The resistivity of ${material.name} is a value from memory: ±{figure:%} is taken.`,
+        remedy: 'Enter the material with the values of your supplier where it matters.',
+        source: material.records.resistivity.source,
+      }),
+    );
+  }
   if (coil.leads === null) {
     out.push(
       finding({
