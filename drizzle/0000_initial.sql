@@ -190,6 +190,20 @@ CREATE TABLE `check_result` (
 	FOREIGN KEY (`check_id`) REFERENCES `requirement_check`(`id`) ON UPDATE no action ON DELETE restrict
 );
 --> statement-breakpoint
+CREATE TABLE `heating_run` (
+	`id` text PRIMARY KEY NOT NULL,
+	`job_id` text NOT NULL,
+	`user_id` text,
+	`request` text NOT NULL,
+	`method_version` text NOT NULL,
+	`result` text,
+	`problem` text,
+	`created_at` integer NOT NULL,
+	`expires_at` integer NOT NULL,
+	FOREIGN KEY (`user_id`) REFERENCES `user`(`id`) ON UPDATE no action ON DELETE restrict
+);
+--> statement-breakpoint
+CREATE INDEX `heating_run_expires` ON `heating_run` (`expires_at`);--> statement-breakpoint
 CREATE TABLE `company` (
 	`id` text PRIMARY KEY NOT NULL,
 	`kind` text NOT NULL,
@@ -635,6 +649,7 @@ CREATE TABLE `as_built_record` (
 	`verdicts` text NOT NULL,
 	`verdict` text NOT NULL,
 	`state` text NOT NULL,
+	`outcome` text,
 	`specification_hash` text NOT NULL,
 	`entered_by` text NOT NULL,
 	`entered_at` integer NOT NULL,

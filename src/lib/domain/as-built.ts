@@ -41,3 +41,21 @@ export interface LineVerdict {
   verdict: Verdict;
   remark: string;
 }
+
+/** What the checker makes of a measured coil, towards its place on the machine. Figures are SI. */
+export interface AsBuiltOutcome {
+  /** How the measurement was carried to the operating point, in words. */
+  explanation: string;
+  /** The bank setting that now tunes it; null where the method gives none. */
+  advised: {
+    label: string;
+    reason: string;
+    capacitance: number;
+    frequencyHot: number;
+    deliverablePower: number;
+    fits: boolean;
+    /** Whether it is what the specification advised. */
+    asPredicted: boolean;
+  } | null;
+  comparisons: { name: string; unit: Unit; predicted: number; low: number; high: number; measured: number }[];
+}

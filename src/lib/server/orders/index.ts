@@ -3,6 +3,7 @@ export { createOrder, milestoneMoney, type CreateOrderInput } from './create-ord
 export { acknowledgeOrder, moveOrder } from './acknowledge-order.ts';
 export { approvedDrawing, drawingsOf, judgeDrawing, submitDrawing } from './drawings.ts';
 export { enterRecord, movePiece, recordsOf, type EnterRecordInput } from './records.ts';
+export { asBuiltOutcomeJob } from './as-built-outcome.ts';
 export { askRemake, concedeMiss } from './misses.ts';
 export {
   acceptPieces,

@@ -9,7 +9,9 @@ import type { By } from '../audit/index.ts';
 import { transact, type Database, type Reader, type Tx } from '../db/index.ts';
 import { asBuiltFile, asBuiltRecord, piece } from '../db/schema/orders.ts';
 import { transition } from '../db/transition.ts';
+import { enqueueJob } from '../jobs/index.ts';
 import { requireCleanFile, shareFile } from '../files/index.ts';
+import { asBuiltOutcomeJob } from './as-built-outcome.ts';
 import { requireRunning } from './guards.ts';
 import { milestoneOfKind } from './milestones.ts';
 import { orderFor, orderSpecificationOf, type PieceRow } from './queries.ts';
@@ -116,6 +118,7 @@ export async function enterRecord(
       commandId: input.commandId,
     });
     await attachFiles(tx, recordId, order, input);
+    await enqueueJob(tx, asBuiltOutcomeJob, { recordId }, { dedupeKey: recordId });
     const misses = judged.lines.filter((line) => line.verdict === 'fail');
     await tell(tx, order, {
       kind: 'as-built-submitted',

@@ -1,28 +1,26 @@
 import type { AsBuiltBody, AsBuiltValue, LineVerdict } from '../../domain/as-built.ts';
 import type { Verdict } from '../../domain/piece-states.ts';
+import { verdictOf } from '../../induction/check/as-built.ts';
 import type { AcceptanceLine } from '../../induction/check/types.ts';
 
 const isNumeric = (line: AcceptanceLine) => line.low !== null || line.high !== null;
 
 function judgeNumber(line: AcceptanceLine, given: AsBuiltValue): { verdict: Verdict; remark: string } {
   if (given.value === null) return { verdict: 'fail', remark: 'not measured' };
-  const below = line.low === null ? Infinity : given.value - line.low;
-  const above = line.high === null ? Infinity : line.high - given.value;
-  const inside = Math.min(below, above);
-  if (inside >= given.uncertainty) return { verdict: 'pass', remark: '' };
-  if (inside >= -given.uncertainty && given.uncertainty > 0) {
-    return { verdict: 'pass-with-remark', remark: 'within the measurement uncertainty of the limit' };
-  }
-  return inside >= 0
-    ? { verdict: 'pass', remark: '' }
-    : { verdict: 'fail', remark: below < 0 ? 'below the lower limit' : 'above the upper limit' };
+  const verdict = verdictOf(given.value, line.low, line.high, given.uncertainty);
+  const below = line.low !== null && given.value < line.low;
+  const remark = {
+    pass: '',
+    'pass-with-remark': 'within the measurement uncertainty of the limit',
+    fail: below ? 'below the lower limit' : 'above the upper limit',
+  }[verdict === 'missing' ? 'fail' : verdict];
+  return { verdict: verdict === 'missing' ? 'fail' : verdict, remark };
 }
 
 /**
  * Judges a record line by line against the acceptance lines of the order specification. SI units on both
- * sides; `uncertainty` is the expanded uncertainty (k = 2) in the unit of the line. A value at least its
- * uncertainty inside the limits passes, one within its uncertainty of a limit passes with remark, beyond
- * that it fails; a line left out fails. Documents and yes/no tests go by their tick.
+ * sides; `uncertainty` is the expanded uncertainty (k = 2) in the unit of the line. A value within
+ * its uncertainty of a limit, on either side, passes with remark; beyond a limit by more than that it fails; a line left out fails. Documents and yes/no tests go by their tick.
  */
 export function judgeRecord(
   lines: readonly AcceptanceLine[],

@@ -3,6 +3,7 @@ import type { Actor } from '../../domain/actor.ts';
 import type { Reader } from '../db/index.ts';
 import { notification } from '../db/schema/platform.ts';
 import { companyDeskItems } from '../companies/index.ts';
+import { orderDeskItems } from '../orders/index.ts';
 import { requestDeskItems } from './request-desk.ts';
 
 /** One thing that waits: for the actor, or for somebody else in a matter of the actor's companies. */
@@ -26,7 +27,7 @@ export interface DeskItem {
 export type DeskProvider = (reader: Reader, actor: Actor) => Promise<DeskItem[]>;
 
 /** A domain adds its provider here; each is one query or two, never one per row. */
-export const deskProviders: readonly DeskProvider[] = [companyDeskItems, requestDeskItems];
+export const deskProviders: readonly DeskProvider[] = [companyDeskItems, requestDeskItems, orderDeskItems];
 
 export interface DeskView {
   mine: DeskItem[];

@@ -1,4 +1,6 @@
 import type { JobDefinition } from '../jobs/index.ts';
+import { heatingJob } from '../checks/index.ts';
+import { asBuiltOutcomeJob } from '../orders/index.ts';
 import { operationJob, paymentEventJob } from '../money/index.ts';
 import { announceRequest } from './announce-request.ts';
 
@@ -10,6 +12,8 @@ function registered<Payload>(definition: JobDefinition<Payload>): JobDefinition<
 /** Every kind of background job. A domain adds its definition here; the handler loads when first run. */
 export const jobDefinitions: readonly JobDefinition<never>[] = [
   registered(announceRequest),
+  registered(asBuiltOutcomeJob),
+  registered(heatingJob),
   registered(operationJob),
   registered(paymentEventJob),
 ];

@@ -142,6 +142,7 @@ async function pieceViews(reader: Reader, order: OrderRow, names: Map<string, st
         state: record.state,
         lines: record.verdicts,
         body: record.body,
+        outcome: record.outcome,
         enteredAt: record.enteredAt,
         enteredBy: names.get(record.enteredBy) ?? '',
         reasons: record.reasons,

@@ -9,7 +9,7 @@ import {
 } from '../../../domain/milestone-states.ts';
 import { orderStates } from '../../../domain/order-states.ts';
 import { pieceStates, recordStates, verdicts } from '../../../domain/piece-states.ts';
-import type { AsBuiltBody, LineVerdict } from '../../../domain/as-built.ts';
+import type { AsBuiltBody, AsBuiltOutcome, LineVerdict } from '../../../domain/as-built.ts';
 import type { OrderTerms } from '../../../domain/order-terms.ts';
 import { user } from './auth.ts';
 import { id, instant, json, version } from './columns.ts';
@@ -208,6 +208,8 @@ export const asBuiltRecord = sqliteTable(
     verdicts: json<LineVerdict[]>('verdicts').notNull(),
     verdict: text('verdict', { enum: verdicts }).notNull(),
     state: text('state', { enum: recordStates }).notNull(),
+    /** The machine setting that now tunes the coil; computed by a job, null until then. */
+    outcome: json<AsBuiltOutcome>('outcome'),
     /** The order specification it was judged against. */
     specificationHash: text('specification_hash').notNull(),
     enteredBy: userRef('entered_by').notNull(),
