@@ -88,7 +88,8 @@ test('an engineer enters a machine, composes a request, settles its findings and
   );
   await expectAccessible(page);
   await page.getByRole('button', { name: 'Request a coil for it' }).click();
-  await expect(page.getByRole('heading', { level: 1, name: 'New request' })).toBeVisible();
+  await expect(page).toHaveURL(/\/compose$/);
+  await expect(page.getByText(/Saved .*version 1/)).toBeVisible();
 
   // Going on too early: the summary takes the focus and its links lead into the fields.
   await page.getByRole('button', { name: 'Post the request' }).click();
@@ -173,7 +174,8 @@ test('the same in inch units: bare numbers are inches, psi and °F, and mean the
   // Stored once in SI: the account's own set shows it back in metric.
   await expect(page.locator('[name="machine.water.inletTemperatureC"]')).toHaveValue('25');
   await page.getByRole('button', { name: 'Request a coil for it' }).click();
-  await expect(page.getByRole('heading', { level: 1, name: 'New request' })).toBeVisible();
+  await expect(page).toHaveURL(/\/compose$/);
+  await expect(page.getByText(/Saved .*version 1/)).toBeVisible();
   await page.getByRole('radio', { name: 'Inch' }).check();
   await fill(page, {
     title: `Pin coil in inches ${aWord()}`,
@@ -218,7 +220,8 @@ test('two tabs on one draft: the later one is told and chooses, nothing is lost 
   await page.goto('/requests/new');
   await page.getByLabel('An empty form').check();
   await page.getByRole('button', { name: 'Begin the draft' }).click();
-  await expect(page.getByRole('heading', { level: 1, name: 'New request' })).toBeVisible();
+  await expect(page).toHaveURL(/\/compose$/);
+  await expect(page.getByText(/Saved .*version 1/)).toBeVisible();
   const other = await page.context().newPage();
   await other.goto(page.url());
   await expect(other.getByText(/version 1/)).toBeVisible();

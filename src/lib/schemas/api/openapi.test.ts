@@ -1,5 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { checkRequestSchema } from './check.ts';
+import { heatingRequestSchema } from './heating.ts';
+import { impedanceRequestSchema } from './impedance.ts';
 import { openApiDocument } from './openapi.ts';
 
 type Json = Record<string, unknown>;
@@ -27,7 +29,12 @@ describe('the OpenAPI document', () => {
 
   it('says it is OpenAPI 3.1 and names what needs no account', () => {
     expect(document['openapi']).toBe('3.1.0');
-    expect(Object.keys(document['paths'] as Json)).toContain('/api/v1/checks');
+    expect(Object.keys(document['paths'] as Json)).toEqual([
+      '/api/v1/checks',
+      '/api/v1/impedance',
+      '/api/v1/heatings',
+      '/api/v1/heatings/{id}',
+    ]);
   });
 
   it('has every schema that it refers to, inside itself', () => {
@@ -45,12 +52,16 @@ describe('the OpenAPI document', () => {
     expect(JSON.stringify(tube.properties['waterCircuits'])).toContain('"minimum":1');
   });
 
-  it('gives an example that its own parser takes', () => {
-    const operation = at(document, '#/paths') as Record<string, { post: Json }>;
-    const body = operation['/api/v1/checks']?.post['requestBody'] as {
-      content: Record<string, { example: unknown }>;
-    };
-    const example = body.content['application/json']?.example;
-    expect(checkRequestSchema.safeParse(example).success).toBe(true);
+  it('gives examples that their own parsers take', () => {
+    const operations = at(document, '#/paths') as Record<string, { post: Json }>;
+    for (const [path, schema] of Object.entries({
+      '/api/v1/checks': checkRequestSchema,
+      '/api/v1/impedance': impedanceRequestSchema,
+      '/api/v1/heatings': heatingRequestSchema,
+    })) {
+      const body = operations[path]?.post['requestBody'] as { content: Record<string, { example: unknown }> };
+      const example = body.content['application/json']?.example;
+      expect([path, schema.safeParse(example).success]).toEqual([path, true]);
+    }
   });
 });

@@ -9,6 +9,8 @@ import {
 } from './check.ts';
 import { coilSchema } from './coil.ts';
 import { exampleRequirement } from './examples.ts';
+import { heatingAcceptedSchema, heatingRequestSchema, heatingStateSchema } from './heating.ts';
+import { impedanceRequestSchema, impedanceResponseSchema } from './impedance.ts';
 import { machineSchema } from './machine.ts';
 import { processSchema, workpieceSchema } from './part.ts';
 import { problemSchema } from './problem.ts';
@@ -41,7 +43,27 @@ const named: Record<string, z.ZodType> = {
   Figure: figureSchema,
   Finding: findingSchema,
   LadderRow: ladderRowSchema,
+  ImpedanceRequest: impedanceRequestSchema,
+  ImpedanceResponse: impedanceResponseSchema,
+  HeatingRequest: heatingRequestSchema,
+  HeatingAccepted: heatingAcceptedSchema,
+  HeatingState: heatingStateSchema,
   Problem: problemSchema,
+};
+
+const refusals = {
+  '400': { description: 'The body cannot be read or computed; fields name what is wrong', schema: 'Problem' },
+  '413': { description: 'The body is larger than 256 kB', schema: 'Problem' },
+  '429': { description: 'Too often in a short time', schema: 'Problem' },
+  '503': { description: 'All solver threads are busy', schema: 'Problem' },
+};
+
+const heatingId = {
+  name: 'id',
+  in: 'path',
+  required: true,
+  schema: { type: 'string', format: 'uuid' },
+  description: 'The id that asking for the run answered',
 };
 
 const operations: ApiOperation[] = [
@@ -56,11 +78,71 @@ const operations: ApiOperation[] = [
     example: { requirement: exampleRequirement(), setting: 'default' },
     responses: {
       '200': { description: 'The result of the check', schema: 'CheckResult' },
-      '400': { description: 'The requirement cannot be read; fields name what is wrong', schema: 'Problem' },
-      '413': { description: 'The body is larger than 256 kB', schema: 'Problem' },
+      ...refusals,
       '422': { description: 'The check is beyond what one run may take', schema: 'Problem' },
-      '429': { description: 'Too many checks in a short time', schema: 'Problem' },
-      '503': { description: 'All solver threads are busy', schema: 'Problem' },
+    },
+  },
+  {
+    method: 'post',
+    path: '/api/v1/impedance',
+    id: 'impedance',
+    summary: 'Impedance of a coil, alone and with a part',
+    description:
+      'Inductance, resistance and Q at up to 50 frequencies, as a meter at the contact faces would see them. Needs no account.',
+    request: 'ImpedanceRequest',
+    example: {
+      coil: exampleRequirement().coil,
+      part: null,
+      includeLeads: true,
+      frequencies: [10e3, 20e3],
+    },
+    responses: {
+      '200': { description: 'Impedance at each frequency', schema: 'ImpedanceResponse' },
+      ...refusals,
+    },
+  },
+  {
+    method: 'post',
+    path: '/api/v1/heatings',
+    id: 'heat',
+    summary: 'Begin a heating run',
+    description:
+      'Temperatures of the part over time, with the field solved again as its properties change. Answers at once; the run is a job. Results are kept 24 h.',
+    request: 'HeatingRequest',
+    example: {
+      requirement: exampleRequirement(),
+      drive: null,
+      frequency: null,
+      duration: null,
+      setting: 'preview',
+    },
+    responses: {
+      '202': { description: 'The run was begun', schema: 'HeatingAccepted' },
+      ...refusals,
+    },
+  },
+  {
+    method: 'get',
+    path: '/api/v1/heatings/{id}',
+    id: 'heatingState',
+    summary: 'State, progress and result of a heating run',
+    description: 'Poll once a second at most.',
+    parameters: [heatingId],
+    responses: {
+      '200': { description: 'How far it is, with the result once it is done', schema: 'HeatingState' },
+      '404': { description: 'There is no such run, or it is not yours', schema: 'Problem' },
+    },
+  },
+  {
+    method: 'delete',
+    path: '/api/v1/heatings/{id}',
+    id: 'cancelHeating',
+    summary: 'Cancel a heating run',
+    description: 'A finished run stays as it is.',
+    parameters: [heatingId],
+    responses: {
+      '204': { description: 'Cancelled, or finished before' },
+      '404': { description: 'There is no such run, or it is not yours', schema: 'Problem' },
     },
   },
 ];

@@ -36,15 +36,20 @@ function threads(): Piscina<SolveTask, SolveOutcome> {
  * Runs a task on a solver thread and returns the result's text. A full queue is `busy`, a run over the
  * time limit `limit-exceeded`; what the method refuses is `invalid-input` with its words.
  */
-export async function solveInThread(task: SolveTask, signal?: AbortSignal): Promise<string> {
-  const limit = AbortSignal.timeout(timeLimitMs);
+export async function solveInThread(
+  task: SolveTask,
+  options: { signal?: AbortSignal; timeLimitMs?: number } = {},
+): Promise<string> {
+  const limit = AbortSignal.timeout(options.timeLimitMs ?? timeLimitMs);
   let outcome: SolveOutcome;
   try {
-    outcome = await threads().run(task, { signal: signal ? AbortSignal.any([limit, signal]) : limit });
+    outcome = await threads().run(task, {
+      signal: options.signal ? AbortSignal.any([limit, options.signal]) : limit,
+    });
   } catch (error) {
     if (limit.aborted) {
       throw new AppError('limit-exceeded', {
-        detail: `This check took longer than ${timeLimitMs / 1000} s and was stopped. Fewer turns or a simpler bank will do.`,
+        detail: `This took longer than ${(options.timeLimitMs ?? timeLimitMs) / 1000} s and was stopped. Fewer turns or a simpler bank will do.`,
         cause: error,
       });
     }

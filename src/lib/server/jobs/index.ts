@@ -27,6 +27,8 @@ export interface JobDefinition<Payload = unknown> {
   /** Tries before it is put aside as dead. */
   maxAttempts: number;
   leaseMs: number;
+  /** Takes minutes: runs in a lane of its own, so that mails and money never wait behind it. */
+  long?: boolean;
   handler: () => Promise<JobHandler<Payload>>;
 }
 

@@ -1,6 +1,7 @@
 import { probeServices } from '../admin/index.ts';
 import { sealAudit } from '../audit/seals.ts';
 import { lapseBids } from '../bids/index.ts';
+import { clearOldHeatings } from '../checks/index.ts';
 import type { Database } from '../db/index.ts';
 import { clearUnfinishedUploads } from '../files/index.ts';
 import { recoverMoney } from '../money/index.ts';
@@ -40,6 +41,7 @@ export const recurringTasks: readonly RecurringTask[] = [
       await sealAudit(db, signal);
     },
   },
+  { name: 'old-heatings', everyMs: 600_000, run: clearOldHeatings },
   { name: 'service-probes', everyMs: 30_000, run: (db) => probeServices(db), workerOnly: true },
   { name: 'order-deadlines', everyMs: 5_000, run: runOrderDeadlines },
 ];

@@ -24,7 +24,10 @@ async function lane(name: string, idleMs: number, signal: AbortSignal, step: () 
     try {
       busy = await step();
     } catch (error) {
-      log().error({ lane: name, error: error instanceof Error ? error.message : String(error) }, 'worker lane failed');
+      log().error(
+        { lane: name, error: error instanceof Error ? error.message : String(error) },
+        'worker lane failed',
+      );
       await pause(2_000, signal);
     }
     if (!busy) await pause(idleMs, signal);
@@ -37,11 +40,14 @@ export async function runWorker(db: Database, options: WorkerOptions): Promise<v
   const idleMs = options.idleMs ?? 250;
   await Promise.all([
     lane('mail', idleMs, signal, async () => (await sendDueMails(db, send, { owner, signal })).sent > 0),
-    lane('jobs', idleMs, signal, async () => {
-      const row = await claimJob(db, owner, jobDefinitions);
-      if (!row) return false;
-      await runJob(db, owner, jobDefinitions, row, signal);
-      return true;
+    ...[false, true].map((long) => {
+      const definitions = jobDefinitions.filter((definition) => (definition.long ?? false) === long);
+      return lane(long ? 'long jobs' : 'jobs', idleMs, signal, async () => {
+        const row = await claimJob(db, owner, definitions);
+        if (!row) return false;
+        await runJob(db, owner, definitions, row, signal);
+        return true;
+      });
     }),
     ...recurringTasks.map((task) =>
       lane(task.name, task.everyMs, signal, async () => {

@@ -63,3 +63,23 @@ export const checkAcknowledgement = sqliteTable(
   },
   (table) => [uniqueIndex('check_acknowledgement_finding').on(table.checkId, table.code, table.subject)],
 );
+
+/** A heating run asked for by API; its job carries state and progress. Kept for a day. */
+export const heatingRun = sqliteTable(
+  'heating_run',
+  {
+    id: id(),
+    jobId: text('job_id').notNull(),
+    /** null: asked without an account; whoever has the id may read it. */
+    userId: text('user_id').references(() => user.id, { onDelete: 'restrict' }),
+    request: text('request').notNull(),
+    methodVersion: text('method_version').notNull(),
+    result: text('result'),
+    /** Why it gives no result, in words. */
+    problem: text('problem'),
+    createdAt: instant('created_at').notNull(),
+    /** Real time. */
+    expiresAt: instant('expires_at').notNull(),
+  },
+  (table) => [index('heating_run_expires').on(table.expiresAt)],
+);
