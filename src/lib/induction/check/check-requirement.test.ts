@@ -228,6 +228,14 @@ describe('what cannot be computed', () => {
     expect(codes(check)).toContain('part-does-not-couple');
   });
 
+  it('takes a setting for the fitted one where none is marked, and says so', () => {
+    const check = change((r) => {
+      if (r.machine.bank.kind === 'groups' && r.machine.bank.groups[0]) r.machine.bank.groups[0].fitted = 0;
+    });
+    expect(check.ladder.filter((row) => row.fitted)).toHaveLength(1);
+    expect(check.findings.find((one) => one.subject === 'machine.bank')?.message).toContain('not known');
+  });
+
   it('asks for turns that are open', () => {
     const check = change((r) => {
       if (r.coil.winding.shape === 'helix') r.coil.winding.turns = null;

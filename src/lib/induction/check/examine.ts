@@ -139,6 +139,7 @@ function addTank(context: CheckContext, models: Models, requirement: Requirement
   adviseRow(context.ladder, assumed);
   context.fittedRow = fitted;
   if (!fitted) return;
+  standIn(context, solved.indexOf(fitted));
   const { cold, hot } = fitted.points;
   context.cold = loadedFigures(models.nominal.cold, cold.frequency, states.cold.sources);
   context.hot = loadedFigures(models.nominal.hot, hot.frequency, states.hot.sources);
@@ -154,6 +155,22 @@ function addTank(context: CheckContext, models: Models, requirement: Requirement
     hot.state.coilCurrent,
     ...usable.flatMap((row) => [row.cold.coilCurrent, row.hot.coilCurrent]),
   );
+}
+
+/** Where no setting is marked as fitted, the one the figures were made for stands in, and that is said. */
+function standIn(context: CheckContext, index: number): void {
+  const row = context.ladder[index];
+  if (!row || context.ladder.some((one) => one.fitted)) return;
+  row.fitted = true;
+  context.assumptions.push({
+    field: 'machine.bank',
+    name: 'bank setting fitted now',
+    value: null,
+    taken: `“${row.label}”`,
+    band: 0,
+    severity: 'caution',
+    howToFind: 'Mark the units, total and tap that are connected, or take the advised setting.',
+  });
 }
 
 /** Share of the coil's voltage in the first half of its turns. */
