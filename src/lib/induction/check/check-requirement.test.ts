@@ -233,7 +233,8 @@ describe('what cannot be computed', () => {
       if (r.machine.bank.kind === 'groups' && r.machine.bank.groups[0]) r.machine.bank.groups[0].fitted = 0;
     });
     expect(check.ladder.filter((row) => row.fitted)).toHaveLength(1);
-    expect(check.findings.find((one) => one.subject === 'machine.bank')?.message).toContain('not known');
+    const said = check.findings.find((one) => one.code === 'assumed-value' && one.subject === 'machine.bank');
+    expect(said?.message).toContain('bank setting fitted now is not known');
   });
 
   it('asks for turns that are open', () => {
