@@ -25,7 +25,7 @@ test('an invitation waits for the invited person on their desk and for others on
   const desk = await deskOf(db, owner);
   expect(desk.others).toMatchObject([{ who: person.email, waitsFor: 'others' }]);
   // Not verified yet: that waits for the owner.
-  expect(desk.mine).toMatchObject([{ href: `/companies/${companyId}/documents` }]);
+  expect(desk.mine).toMatchObject([{ href: `/companies/${companyId}/verification` }]);
   expect((await deskOf(db, builder)).others).toEqual([]);
   close();
 });

@@ -56,9 +56,9 @@ export async function companyDeskItems(reader: Reader, actor: Actor) {
       .filter((m) => m.kind === 'fabricator' && !m.verified)
       .map((m) => ({
         id: `verification/${m.companyId}`,
-        title: 'Hand in the papers for verification',
+        title: 'Ask for verification',
         detail: `${m.companyName} can bid once it is verified`,
-        href: `/companies/${m.companyId}/documents`,
+        href: `/companies/${m.companyId}/verification`,
         dueAt: null,
         waitsFor: 'me' as const,
       })),

@@ -20,4 +20,4 @@ export {
 export { questionById, unsafeQuestions, type QuestionRow } from './questions.ts';
 export { listRequests, type RequestListItem } from './list-requests.ts';
 export { viewDraft, type DraftView } from './view-draft.ts';
-export { searchWords, removeFromSearch, writeToSearch } from './search-index.ts';
+export { materialKey, removeFromSearch, searchWords, tubeSize, writeToSearch } from './search-index.ts';

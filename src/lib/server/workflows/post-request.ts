@@ -23,8 +23,9 @@ import {
   writeToSearch,
   type RequestRow,
   type SpecificationFile,
+  materialKey,
+  tubeSize,
 } from '../requests/index.ts';
-import { materialKey, tubeSize } from '../requests/search-index.ts';
 import { announceRequest } from './announce-request.ts';
 
 export interface PostRequestInput {
