@@ -5,7 +5,6 @@ import { addDays, dateIn, dayMs } from '../../src/lib/domain/dates.ts';
 import { moveClock } from '../../src/lib/server/adapters/clock.ts';
 import { newId } from '../../src/lib/server/adapters/ids.ts';
 import {
-  compareBids,
   confirmBid,
   decideException,
   lapseBids,
@@ -20,6 +19,7 @@ import { approval, bid, bidException } from '../../src/lib/server/db/schema/bids
 import { coilOrder, milestone, orderSpecification } from '../../src/lib/server/db/schema/orders.ts';
 import { outboxMail } from '../../src/lib/server/db/schema/platform.ts';
 import { request } from '../../src/lib/server/db/schema/requests.ts';
+import { compareBids } from '../../src/lib/server/workflows/compare-bids.ts';
 import { awardBid, decideApproval } from '../../src/lib/server/workflows/award-bid.ts';
 import { testDatabase, type TestDatabase } from '../support/db.ts';
 import { aCompany, aMember } from '../support/people.ts';
@@ -105,7 +105,13 @@ describe('a bid', () => {
       { kind: 'delivery', shareBp: 1000 },
     ];
     await expect(
-      submitBid(test.db, estimator, { requestId, companyId: shopId, commandId: newId(), version: null, values }),
+      submitBid(test.db, estimator, {
+        requestId,
+        companyId: shopId,
+        commandId: newId(),
+        version: null,
+        values,
+      }),
     ).rejects.toMatchObject({
       code: 'invalid-input',
       fields: {
@@ -137,8 +143,12 @@ describe('a bid', () => {
   it('is sealed: another bidder sees only their own, and nobody outside sees the comparison', async () => {
     await handIn(estimator, shopId);
     expect(await ownBid(test.db, otherEstimator, requestId, otherId)).toBeNull();
-    await expect(ownBid(test.db, otherEstimator, requestId, shopId)).rejects.toMatchObject({ code: 'not-found' });
-    await expect(compareBids(test.db, otherEstimator, requestId)).rejects.toMatchObject({ code: 'not-found' });
+    await expect(ownBid(test.db, otherEstimator, requestId, shopId)).rejects.toMatchObject({
+      code: 'not-found',
+    });
+    await expect(compareBids(test.db, otherEstimator, requestId)).rejects.toMatchObject({
+      code: 'not-found',
+    });
     const seen = JSON.stringify(await requestForBidder(test.db, otherEstimator, requestId, otherId));
     expect(seen).not.toContain('500000');
     expect(seen).not.toContain('budget');
@@ -247,7 +257,10 @@ describe('the award', () => {
     expect(amounts).toEqual([46_053, 115_133, 69_079]);
     expect(await mailsOf('awarded')).toEqual([builder.email, estimator.email].sort());
     expect(await mailsOf('not-selected')).toContain(otherEstimator.email);
-    const states = await test.db.select({ state: request.state }).from(request).where(eq(request.id, requestId));
+    const states = await test.db
+      .select({ state: request.state })
+      .from(request)
+      .where(eq(request.id, requestId));
     expect(states[0]?.state).toBe('awarded');
   });
 

@@ -52,7 +52,7 @@ export async function postRequest(
 ): Promise<string> {
   await page.goto('/requests/new');
   await page.getByRole('radio', { name: 'A requirement as JSON' }).check();
-  await page.getByLabel('Requirement').fill(JSON.stringify(exampleRequirement()));
+  await page.locator('textarea[name="json"]').fill(JSON.stringify(exampleRequirement()));
   await page.getByRole('button', { name: 'Begin the draft' }).click();
   await page.waitForURL(/compose/);
   const fill = async (name: string, text: string) => {

@@ -1,9 +1,10 @@
 import { redirect } from '@sveltejs/kit';
 import { AppError } from '$lib/domain/errors.ts';
 import { can } from '$lib/domain/policy.ts';
-import { compareBids, decideException } from '$lib/server/bids/index.ts';
+import { decideException } from '$lib/server/bids/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading } from '$lib/server/http/index.ts';
+import { compareBids } from '$lib/server/workflows/compare-bids.ts';
 import { awardBid, decideApproval } from '$lib/server/workflows/award-bid.ts';
 import type { Actions, PageServerLoad, RequestEvent } from './$types.ts';
 

@@ -10,12 +10,18 @@ import {
 import type { Commercial } from '../../domain/commercial.ts';
 import { requireAccess } from '../access/index.ts';
 import { businessNow } from '../adapters/clock.ts';
+import {
+  awardObstacles,
+  companyTerms,
+  exceptionsOf,
+  filesOf,
+  handedInBids,
+  needsApproval,
+  requestById,
+} from '../bids/index.ts';
 import type { Reader } from '../db/index.ts';
 import { approval } from '../db/schema/bids.ts';
 import { payoutReady } from '../money/index.ts';
-import { awardObstacles, needsApproval } from './award-rules.ts';
-import { companyTerms } from './company-terms.ts';
-import { exceptionsOf, filesOf, handedInBids, requestById } from './queries.ts';
 
 export interface ComparedBid {
   id: string;
