@@ -123,7 +123,7 @@ describe('bank', () => {
   it('lists every setting of whole strings and marks the fitted one', () => {
     const rows = arrangements(exampleMachine().bank);
     expect(rows.map((row) => row.unitsPerGroup[0])).toEqual([1, 2, 3, 4, 5, 6, 7, 8]);
-    expect(rows.filter((row) => row.fitted).map((row) => row.id)).toEqual(['units-4']);
+    expect(rows.filter((row) => row.fitted).map((row) => row.id)).toEqual(['units-5']);
     expect(groupCapacitance(2e-6, 6, 2)).toBe(3e-6);
   });
 
