@@ -203,6 +203,7 @@ const byHand = (id: (ids: Ids) => string) => form((ids) => ({ id: id(ids), event
 export const rules: Record<string, RouteRules> = {
   // Frames and pages for all
   '/': plain({ layout: everyone, load: everyone, page: everyone }),
+  '/accuracy': plain({ '*': everyone }),
   '/bench': plain({ '*': everyone }),
   '/styleguide': plain({ load: everyone }),
   '/sign-out': plain({ load: everyone, 'action:default': everyone }),
@@ -440,6 +441,8 @@ export const rules: Record<string, RouteRules> = {
   '/api/v1/checks': plain({ '*': everyone }),
   '/api/v1/impedance': plain({ '*': everyone }),
   '/api/v1/heatings': plain({ '*': everyone }),
+  // The run of a signed-in person is theirs alone.
+  '/api/v1/heatings/[id]': { params: (ids) => ({ id: ids.heating }), handlers: { '*': ['buyer-engineer'] } },
   '/api/v1/board': plain({ GET: verifiedMakers }),
   '/api/v1/requests/[id]/answers': ofDraft({ '*': judges }),
   '/api/v1/requests/[id]/checks': ofDraft({ '*': judges }),

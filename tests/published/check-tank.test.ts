@@ -17,7 +17,7 @@ import {
   parallelZeroPhaseFrequency,
   resonance,
 } from '../../src/lib/induction/tank/resonance.ts';
-import { check } from './support/published-check.ts';
+import { check, evaluated, solvedElsewhere } from './support/published-check.ts';
 import { input, single, solvedCases, valuesOf, type ReferenceValue } from './support/reference-values.ts';
 
 const subject = 'check-tank';
@@ -34,8 +34,8 @@ const plain: TankCircuit = {
 };
 
 function compare(v: ReferenceValue, value: number): void {
-  const { id, quantity, source, tolerance } = v;
-  check(subject, { id, quantity, source, tolerance, value, expected: single(v) });
+  const { id, quantity, source, standing, tolerance } = v;
+  check(subject, { id, quantity, source, standing, tolerance, value, expected: single(v) });
 }
 
 /** The frequencies are printed to a whole hertz: half of one is rounding. */
@@ -85,6 +85,7 @@ describe('resonance of a tank with loss', () => {
         id: `zero-phase-shift-${q}`,
         quantity: 'relative shift of the zero-phase frequency',
         source: 'series expansion of √(1 − 1/Q²)',
+        standing: evaluated,
         value,
         expected: 1 / (2 * q * q),
         tolerance: { rel: 0.01 },
@@ -146,6 +147,7 @@ describe('solved circuits', () => {
           id: `${one.id}-${key}`,
           quantity: key,
           source: `${one.method}, ${one.tool}`,
+          standing: solvedElsewhere,
           value: reading(solved),
           expected,
           tolerance: { rel: 1e-6 },
@@ -237,6 +239,7 @@ describe('nodal analysis', () => {
           id: `nodal-${bankSide}-${id}`,
           quantity: id,
           source: 'nodal analysis in this test',
+          standing: solvedElsewhere,
           value,
           expected,
           tolerance: { rel: 1e-9 },
@@ -268,6 +271,7 @@ describe('push-pull stage', () => {
       id: 'half-capacitors',
       quantity: 'frequency ratio',
       source: 'f ∝ 1/√C',
+      standing: evaluated,
       value: half / full,
       expected: Math.SQRT2,
       tolerance: { rel: 1e-6 },

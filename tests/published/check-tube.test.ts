@@ -11,7 +11,7 @@ const subject = 'check-tube';
 const inch = 0.0254;
 const psi = 6894.757293168;
 const compare = (v: ReferenceValue, value: number, expected: number, id = v.id) =>
-  check(subject, { id, quantity: v.quantity, source: v.source, tolerance: v.tolerance, value, expected });
+  check(subject, { ...v, id, value, expected });
 
 describe('copper tube', () => {
   it.each([

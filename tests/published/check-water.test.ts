@@ -14,12 +14,12 @@ import {
 import { dittusBoelter, gnielinski } from '../../src/lib/induction/cooling/heat-transfer.ts';
 import { flowThrough, temperatureRise } from '../../src/lib/induction/cooling/passage.ts';
 import { water } from '../../src/lib/induction/cooling/water.ts';
-import { check } from './support/published-check.ts';
+import { check, solvedElsewhere } from './support/published-check.ts';
 import { input, single, solvedCase, valuesOf, type ReferenceValue } from './support/reference-values.ts';
 
 const subject = 'check-water';
 const compare = (v: ReferenceValue, value: number, expected = single(v), id = v.id) =>
-  check(subject, { id, quantity: v.quantity, source: v.source, tolerance: v.tolerance, value, expected });
+  check(subject, { ...v, id, value, expected });
 
 describe('cooling water', () => {
   it('has the properties of IAPWS at 2 bar', () => {
@@ -78,6 +78,7 @@ describe('solved water passage (I-04)', () => {
       id: `I-04-${key}`,
       quantity: key,
       source: `${one.method}, ${one.tool}`,
+      standing: solvedElsewhere,
       value,
       expected: Number(one.expected[key]),
       tolerance: { rel },

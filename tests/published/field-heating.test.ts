@@ -12,7 +12,7 @@ import {
 import { runHeating } from '../../src/lib/induction/heating/run-heating.ts';
 import type { HeatingInput, HeatingPoint } from '../../src/lib/induction/heating/types.ts';
 import { plainCoil } from './support/plain-coil.ts';
-import { check } from './support/published-check.ts';
+import { check, solvedElsewhere } from './support/published-check.ts';
 import { input, solvedCase, type SolvedCase } from './support/reference-values.ts';
 
 /** |I1((1+j)·x)|² by its power series, x = r/δ up to about 10. */
@@ -100,6 +100,7 @@ describe('conduction in an infinite cylinder with an eddy-current source', () =>
           id: `${id} ${at} s`,
           quantity: name,
           source: `${c.method}; ${c.tool}`,
+          standing: solvedElsewhere,
           value,
           expected,
           tolerance: { abs: 0.02 * rise },

@@ -33,7 +33,7 @@ import {
 import { describingPermeability } from '../../src/lib/induction/materials/magnetisation.ts';
 import { plainCoil } from './support/plain-coil.ts';
 import { roundSection, solveCase, type PlainCase, type PlainPart } from './support/field-cases.ts';
-import { check } from './support/published-check.ts';
+import { check, solvedElsewhere } from './support/published-check.ts';
 import { input, solvedCase, solvedCases, type SolvedCase } from './support/reference-values.ts';
 
 function list(c: SolvedCase, name: string): number[] {
@@ -104,6 +104,15 @@ function caseOf(c: SolvedCase): PlainCase {
 const settings: SolverSetting[] = ['preview', 'default', 'fine'];
 const family = (f: string) => solvedCases.filter((c) => c.family === f && c.id !== 'D-T2').map((c) => c.id);
 
+/** The unit a name of the solved cases ends with. */
+const units = [
+  ['_H', 'H'],
+  ['_ohm', 'Ω'],
+  ['_W_per_m', 'W/m'],
+  ['_var_per_m', 'var/m'],
+  ['_m', 'm'],
+] as const;
+
 function compare(
   c: SolvedCase,
   quantity: string,
@@ -113,10 +122,12 @@ function compare(
   setting: SolverSetting,
 ) {
   const source = `${c.method}; ${c.tool}`;
+  const unit = units.find(([suffix]) => name.endsWith(suffix))?.[1];
   check('field', {
     id: `${c.id} ${setting}`,
-    quantity,
+    quantity: unit === undefined ? quantity : `${quantity}, ${unit}`,
     source,
+    standing: solvedElsewhere,
     value,
     expected: want(c, name),
     tolerance: { rel },

@@ -7,6 +7,7 @@ import { describe, expect, it } from 'vitest';
 import type { Section } from '../../src/lib/induction/coil/section.ts';
 import { mutualInductance } from '../../src/lib/induction/field/ring-kernel.ts';
 import { helix, roundSection, solveCase, type PlainCase } from './support/field-cases.ts';
+import { check, solvedElsewhere } from './support/published-check.ts';
 import {
   blockCells,
   circlesMutual,
@@ -25,14 +26,28 @@ function turnsOf(c: PlainCase, layers: number, sectors: number): Filament[] {
   );
 }
 
-function compare(c: PlainCase, cells: Filament[], limits: { l: number; r: number; load?: number }): void {
+function compare(
+  id: string,
+  c: PlainCase,
+  cells: Filament[],
+  limits: { l: number; r: number; load?: number },
+): void {
   const reference = solveFilaments(cells, c.coil.rings.length, c.frequency);
   const s = solveCase(c, 'default');
   expect(reference.unknowns).toBeLessThanOrEqual(800);
-  expect(Math.abs(s.inductance / reference.inductance - 1), 'L').toBeLessThan(limits.l);
-  expect(Math.abs(s.resistance / reference.resistance - 1), 'R').toBeLessThan(limits.r);
-  if (limits.load !== undefined)
-    expect(Math.abs(s.load / reference.load - 1), 'R of the part').toBeLessThan(limits.load);
+  const one = (quantity: string, value: number, expected: number, rel: number) =>
+    check('filaments', {
+      id,
+      quantity,
+      source: 'volume filaments from first principles, written for these tests',
+      standing: solvedElsewhere,
+      value,
+      expected,
+      tolerance: { rel },
+    });
+  one('L, H', s.inductance, reference.inductance, limits.l);
+  one('R, Ω', s.resistance, reference.resistance, limits.r);
+  if (limits.load !== undefined) one('R of the part, Ω', s.load, reference.load, limits.load);
 }
 
 describe('volume filaments', () => {
@@ -53,7 +68,7 @@ describe('volume filaments', () => {
       frequency: 2e3,
       part: null,
     };
-    compare(c, turnsOf(c, 6, 48), { l: 2e-3, r: 0.01 });
+    compare('one turn of tube, 2 kHz', c, turnsOf(c, 6, 48), { l: 2e-3, r: 0.01 });
   });
 
   it('three close turns of thin tube, 5 kHz', () => {
@@ -63,7 +78,7 @@ describe('volume filaments', () => {
       frequency: 5e3,
       part: null,
     };
-    compare(c, turnsOf(c, 5, 44), { l: 2e-3, r: 0.015 });
+    compare('three close turns of thin tube, 5 kHz', c, turnsOf(c, 5, 44), { l: 2e-3, r: 0.015 });
   });
 
   it('two turns of solid rod, 1 kHz', () => {
@@ -73,7 +88,7 @@ describe('volume filaments', () => {
       frequency: 1e3,
       part: null,
     };
-    compare(c, turnsOf(c, 9, 40), { l: 3e-3, r: 0.015 });
+    compare('two turns of solid rod, 1 kHz', c, turnsOf(c, 9, 40), { l: 3e-3, r: 0.015 });
   });
 
   it('one turn around a short stainless bar, 3 kHz', () => {
@@ -92,7 +107,11 @@ describe('volume filaments', () => {
       part,
     };
     const bar = blockCells({ lowR: 0, highR: 0.015, lowZ: -0.012, highZ: 0.012 }, -1, 7.2e-7, 16, 22);
-    compare(c, [...turnsOf(c, 6, 44), ...bar], { l: 3e-3, r: 0.015, load: 0.015 });
+    compare('one turn around a short stainless bar, 3 kHz', c, [...turnsOf(c, 6, 44), ...bar], {
+      l: 3e-3,
+      r: 0.015,
+      load: 0.015,
+    });
   });
 
   it('two turns in the bore of an offset tube, 4 kHz', () => {
@@ -111,7 +130,11 @@ describe('volume filaments', () => {
       part,
     };
     const tube = blockCells({ lowR: 0.035, highR: 0.045, lowZ: -0.005, highZ: 0.02 }, -1, 4e-7, 14, 20);
-    compare(c, [...turnsOf(c, 5, 44), ...tube], { l: 3e-3, r: 0.015, load: 0.015 });
+    compare('two turns in the bore of an offset tube, 4 kHz', c, [...turnsOf(c, 5, 44), ...tube], {
+      l: 3e-3,
+      r: 0.015,
+      load: 0.015,
+    });
   });
 
   it('one turn of solid rectangular bar, 1 kHz', () => {
@@ -125,6 +148,6 @@ describe('volume filaments', () => {
     };
     const c: PlainCase = { coil: helix(1, 0.03, 0.012, section), copper: COPPER, frequency: 1e3, part: null };
     const bar = blockCells({ lowR: 0.026, highR: 0.034, lowZ: -0.006, highZ: 0.006 }, 0, COPPER, 20, 26);
-    compare(c, bar, { l: 3e-3, r: 0.015 });
+    compare('one turn of solid rectangular bar, 1 kHz', c, bar, { l: 3e-3, r: 0.015 });
   });
 });

@@ -9,10 +9,17 @@ export interface PublishedCheck {
   id: string;
   quantity: string;
   source: string;
+  /** How far the source itself is known: printed, evaluated, solved for this project, from memory. */
+  standing: string;
   value: number;
   expected: number;
   tolerance: Tolerance;
 }
+
+/** Standing of values that were computed by another method for this comparison. */
+export const solvedElsewhere = 'solved for this project by another method';
+/** Standing of values that follow from a formula anyone can evaluate. */
+export const evaluated = 'evaluated from the named formula';
 
 /**
  * Compares and, when the report is being made (PHYSICS_REPORT names a folder), appends a line with value,
@@ -25,7 +32,9 @@ export function check(subject: string, c: PublishedCheck): void {
   if (folder !== undefined && folder !== '') {
     mkdirSync(folder, { recursive: true });
     const relative = c.expected === 0 ? null : difference / c.expected;
-    const line = { ...c, difference, relative, met: Math.abs(difference) <= allowed };
+    const { id, quantity, source, standing, value, expected, tolerance } = c;
+    const met = Math.abs(difference) <= allowed;
+    const line = { id, quantity, source, standing, value, expected, tolerance, difference, relative, met };
     appendFileSync(`${folder}/${subject}.jsonl`, `${JSON.stringify(line)}\n`);
   }
   expect(
