@@ -7,7 +7,7 @@ import { invite } from '../../src/lib/server/companies/index.ts';
 import type { Database } from '../../src/lib/server/db/index.ts';
 import { session } from '../../src/lib/server/db/schema/auth.ts';
 import { bid, bidException } from '../../src/lib/server/db/schema/bids.ts';
-import { check } from '../../src/lib/server/db/schema/checks.ts';
+import { check, heatingRun } from '../../src/lib/server/db/schema/checks.ts';
 import { companyAddress, invitation, membership } from '../../src/lib/server/db/schema/companies.ts';
 import { file } from '../../src/lib/server/db/schema/files.ts';
 import { machine } from '../../src/lib/server/db/schema/machines.ts';
@@ -75,7 +75,8 @@ export interface World {
     | 'shipment'
     | 'verification'
     | 'upload'
-    | 'makerFile',
+    | 'makerFile'
+    | 'heating',
     string
   >;
 }
@@ -174,12 +175,19 @@ export async function buildWorld(db: Database): Promise<World> {
       'verification',
       'upload',
       'makerFile',
+      'heating',
     ].map((name) => [name, newId()]),
   ) as Record<string, string>;
   const put = <T extends SQLiteTable>(table: T, values: Record<string, unknown>) =>
     insertLeast(db, { user: by, company: buyer }, table, values);
   const now = Date.now();
 
+  await put(heatingRun, {
+    id: id['heating'],
+    jobId: id['job'],
+    userId: actors['buyer-engineer'].userId,
+    expiresAt: Date.now() + 86_400_000,
+  });
   await put(machine, { id: id['machine'], companyId: buyer, createdBy: by });
   await put(request, { id: id['draft'], companyId: buyer, number: 1001, state: 'draft', createdBy: by });
   await put(request, {
