@@ -87,8 +87,15 @@ export async function moneyWorld(): Promise<MoneyWorld> {
   const db = test.db;
   const mails: SentMail[] = [];
   const webhooks: MoneyWorld['webhooks'] = { up: true, received: 0, raw: [] };
-  let payments!: Payments;
-  const server = receiver({ db: () => db, payments: () => payments, state: webhooks });
+  const ours: { payments?: Payments } = {};
+  const server = receiver({
+    db: () => db,
+    payments: () => {
+      if (!ours.payments) throw new Error('a webhook came before the adapter was made');
+      return ours.payments;
+    },
+    state: webhooks,
+  });
   await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve));
   const port = (server.address() as AddressInfo).port;
   const stripe = new Stripe(apiKey, {
@@ -123,7 +130,8 @@ export async function moneyWorld(): Promise<MoneyWorld> {
       maxNetworkRetries: 0,
       ...options,
     });
-  payments = paymentsWith({});
+  const payments = paymentsWith({});
+  ours.payments = payments;
   usePaymentService(payments);
 
   const control = async <T>(method: string, where: string, body?: unknown): Promise<T> => {

@@ -159,7 +159,7 @@ export async function processPaymentEvent(
 ): Promise<void> {
   const [row] = await db.select().from(paymentEvent).where(eq(paymentEvent.id, eventId));
   if (!row || row.state !== 'received') return;
-  let state: 'processed' | 'ignored' | 'quarantined' = 'ignored';
+  let state: 'processed' | 'ignored' | 'quarantined';
   let note = '';
   try {
     state = (await act(db, payments, row)) ? 'processed' : 'ignored';
