@@ -172,14 +172,16 @@ export async function recordAndSubmit(page: Page, orderPath: string): Promise<vo
     .evaluateAll((all) => all.map((one) => one.getAttribute('href') ?? ''));
   for (const href of new Set(links)) {
     await page.goto(href);
+    await page.locator('[name="measuredOn"]').fill(new Date().toISOString().slice(0, 10));
     for (const input of await page.locator('input[name^="value-"]').all()) {
-      // The page says the limits beside the field; the middle of them is typed as a shop would.
-      const row = page.locator('fieldset', { has: input });
-      const words = (await row.innerText()).replace(/\u00a0/g, ' ');
-      const limits = [...words.matchAll(/(\d+(?:\.\d+)?) ?(nH|µH|mm|in|bar|psi|L\/min|gal\/min|mΩ|µΩ)/g)];
-      const numbers = limits.map((match) => Number(match[1]));
+      // The section says the limits ("771 nH to 850 nH"); a value in their middle is typed as a shop would.
+      const words = await input.evaluate((field) => field.closest('section')?.textContent ?? '');
+      const limits = [
+        ...words.replace(/\u00a0/g, ' ').matchAll(/(\d+(?:\.\d+)?) (nH|µH|mm|in|bar|psi|mΩ|µΩ)/g),
+      ];
+      const numbers = limits.slice(0, 2).map((match) => Number(match[1]));
       const unit = limits[0]?.[2] ?? '';
-      const middle = (Math.min(...numbers) + Math.max(...numbers)) / 2;
+      const middle = numbers.reduce((a, b) => a + b, 0) / numbers.length;
       await input.fill(`${middle} ${unit}`);
     }
     for (const select of await page.locator('select[name^="passed-"]').all())
@@ -203,6 +205,8 @@ export async function ship(page: Page, orderPath: string): Promise<void> {
   const section = page.locator('#delivery');
   await section.getByLabel('Carrier').fill('Parcel service');
   await section.getByLabel('Consignment number').fill(`PS-${aWord()}`);
+  const day = section.getByLabel('Handed over on');
+  if ((await day.inputValue()) === '') await day.fill(new Date().toISOString().slice(0, 10));
   await section.getByRole('button', { name: 'Enter the shipment' }).click();
   await expect(section.getByText('Parcel service')).toBeVisible();
 }
