@@ -161,6 +161,7 @@ describe('who reads what', () => {
     expect(await refusalCode(statementOf(world.db, null, order.orderId))).toBe('sign-in-needed');
     // What the payment service charges the platform is not told to the parties.
     expect(JSON.stringify(buyer)).not.toContain('processor');
+    expect(JSON.stringify(buyer)).not.toMatch(/\b(ch|tr|pi|re|cs_test|txn)_\w+/);
     const csv = await statementCsv(world.db, cast.purchaser, order.orderId);
     expect(csv.split('\r\n')[1]).toContain('Drawing,"Paid by the buyer, held by the platform",EUR,238.00');
   });

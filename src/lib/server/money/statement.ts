@@ -24,7 +24,7 @@ export interface StatementRow {
   chargedBack: number;
   /** Held for the order after this line. */
   held: number;
-  /** The payment service's name of it; both parties may quote it to their bank. */
+  /** Our booking; ids of the payment service never reach the parties. */
   reference: string;
 }
 
@@ -97,7 +97,7 @@ export async function statementOf(reader: Reader, actor: Actor | null, orderId: 
       refunded: back ? -clearing : 0,
       chargedBack: bank ? -clearing : 0,
       held,
-      reference: row.objectId ?? '',
+      reference: row.id,
     });
   }
   const books = await booksOf(
