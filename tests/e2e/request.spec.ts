@@ -1,7 +1,27 @@
 import type { Page } from '@playwright/test';
+import { eq } from 'drizzle-orm';
+import { dayMs } from '../../src/lib/domain/dates.ts';
+import { loadActor } from '../../src/lib/server/auth/index.ts';
+import { closeSolvePool } from '../../src/lib/server/checks/index.ts';
+import { database } from '../../src/lib/server/db/index.ts';
+import { company } from '../../src/lib/server/db/schema/companies.ts';
 import { expectAccessible } from '../support/axe.ts';
+import { aFullDraft, postDraft } from '../support/drafts.ts';
 import { anOwner, aWord } from '../support/e2e-people.ts';
 import { expect, signIn, test } from '../support/e2e.ts';
+
+test.afterAll(() => closeSolvePool());
+
+/** A fabricator that may see the board; how one becomes verified is another test's matter. */
+async function aVerifiedShop() {
+  const shop = await anOwner('fabricator');
+  const db = database();
+  await db
+    .update(company)
+    .set({ verifiedUntil: Date.now() + 300 * dayMs })
+    .where(eq(company.id, shop.companyId));
+  return { ...shop, actor: await loadActor(db, shop.actor.userId) };
+}
 
 /** Types into fields by their names, leaving each as a person does. */
 async function fill(page: Page, texts: Record<string, string>): Promise<void> {
@@ -281,6 +301,49 @@ test('someone else’s draft is not there, on the page and by the API', async ({
   });
   expect([answer.status(), answer.headers()['content-type']]).toEqual([404, 'application/problem+json']);
   await context.close();
+});
+
+test('what a bidder gets never holds the buyer’s budget: page, its data, board and API', async ({
+  page,
+  browser,
+}) => {
+  test.setTimeout(180_000);
+  const buyer = await anOwner('buyer');
+  const shop = await aVerifiedShop();
+  const db = database();
+  const draft = await aFullDraft(db, buyer.actor, buyer.companyId, { title: `Sealed ${aWord()}` });
+  await postDraft(db, buyer.actor, draft);
+  await signIn(page, shop);
+  const texts: string[] = [];
+  for (const path of [`/requests/${draft.id}`, '/board']) {
+    texts.push((await (await page.goto(path))?.text()) ?? '');
+    texts.push(await (await page.request.get(`${path}/__data.json`)).text());
+    await expectAccessible(page);
+  }
+  texts.push(await (await page.request.get('/api/v1/board')).text());
+  for (const text of texts) {
+    expect(text.length).toBeGreaterThan(200);
+    expect(text).not.toMatch(/budget":|777777|7,777|SECRET/);
+  }
+  expect(texts.join()).toContain('Sealed');
+
+  // The question reaches the buyer, the answer comes back.
+  await page.goto(`/requests/${draft.id}`);
+  await page.getByLabel('Question or proposal').fill('Is the end face ground?');
+  await page.getByRole('button', { name: 'Ask the buyer' }).click();
+  await expect(page.getByText('Not answered yet.')).toBeVisible();
+  const context = await browser.newContext();
+  const desk = await context.newPage();
+  await signIn(desk, buyer);
+  await desk.goto(`/requests/${draft.id}`);
+  await desk.getByRole('button', { name: 'Send the answer' }).click();
+  await expect(desk.getByRole('alert')).toContainText('Write an answer');
+  await desk.getByLabel('Answer', { exact: true }).fill('Yes, to Ra 0.8.');
+  await desk.getByRole('button', { name: 'Send the answer' }).click();
+  await expect(desk.getByText('Yes, to Ra 0.8.')).toBeVisible();
+  await context.close();
+  await page.reload();
+  await expect(page.getByText('Yes, to Ra 0.8.')).toBeVisible();
 });
 
 test('the bench computes without an account and says whose figures they are', async ({ page }) => {

@@ -57,6 +57,12 @@ export function addWorkingDays(date: string, days: number): string {
   return current;
 }
 
+/** The end of a window: midnight is told as 24:00 of the day that ends, as people say it. */
+export function formatWindowEnd(at: number, zone: string): string {
+  const text = formatInstant(at, zone);
+  return text.endsWith('00:00') ? `${formatInstant(at - 60_000, zone, false)}, 24:00` : text;
+}
+
 /** `12 Mar 2027, 14:05` in the zone; the same text on server and browser. */
 export function formatInstant(at: number, zone: string, withTime = true): string {
   return new Intl.DateTimeFormat('en-GB', {

@@ -50,7 +50,6 @@ interface Options {
   requestId: string;
   version: number;
   savedAt: number;
-  check: StoredCheck | null;
   requirementComplete: boolean;
   snapshot: () => DraftSnapshot;
   /** A stored check of the version on the screen has arrived. */
@@ -87,7 +86,6 @@ export class DraftSync {
     this.#options = options;
     this.version = options.version;
     this.savedAt = options.savedAt;
-    this.check = options.check;
     this.#requirementComplete = options.requirementComplete;
   }
 

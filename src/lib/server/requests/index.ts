@@ -1,6 +1,6 @@
 export { createDraft, type CreateDraftInput, type DraftSource } from './create-draft.ts';
 export { saveDraft, type SaveDraftInput, type SavedDraft } from './save-draft.ts';
-export { answerFinding, checkDraft, unsafeCheckView, type DraftCheck } from './check-draft.ts';
+export { answerFinding, checkDraft, type DraftCheck } from './check-draft.ts';
 export { attachFile, detachFile } from './draft-files.ts';
 export {
   requestForUpdate,

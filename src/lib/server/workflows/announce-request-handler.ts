@@ -1,5 +1,5 @@
 import { and, asc, eq, gt } from 'drizzle-orm';
-import { formatInstant } from '../../domain/dates.ts';
+import { formatWindowEnd } from '../../domain/dates.ts';
 import { businessNow } from '../adapters/clock.ts';
 import { notifyCompany } from '../companies/recipients.ts';
 import { transact } from '../db/index.ts';
@@ -35,7 +35,7 @@ export const tellFabricators: JobHandler<{ requestId: string }> = async ({ reque
             ],
             facts: [
               ['Coils', String(row.quantity ?? 1)],
-              ['Bids close', formatInstant(row.closesAt ?? now, row.buyerZone ?? 'UTC')],
+              ['Bids close', formatWindowEnd(row.closesAt ?? now, row.buyerZone ?? 'UTC')],
             ],
             action: { label: 'See the request', path: `/requests/${row.id}` },
           },

@@ -1,7 +1,7 @@
 import { eq } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
 import type { Commercial } from '../../domain/commercial.ts';
-import { dateIn, endOfDate, formatInstant } from '../../domain/dates.ts';
+import { dateIn, endOfDate, formatWindowEnd } from '../../domain/dates.ts';
 import { AppError } from '../../domain/errors.ts';
 import { openFindings, type FindingAnswer } from '../../domain/finding-answers.ts';
 import type { CheckResult, Requirement } from '../../induction/check/types.ts';
@@ -165,7 +165,7 @@ export async function postRequest(
     for (const file of files) await openFileToVerified(tx, file.id);
     await setRequestState(tx, actor, row, 'post', {
       expectedVersion: input.version,
-      detail: { specificationId, hash, closes: formatInstant(closesAt, buyer.timeZone) },
+      detail: { specificationId, hash, closes: formatWindowEnd(closesAt, buyer.timeZone) },
       set: {
         currentSpecificationId: specificationId,
         shape: requirement.coil.winding.shape,

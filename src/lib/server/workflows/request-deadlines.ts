@@ -1,5 +1,5 @@
 import { and, asc, eq, inArray, isNull, lte } from 'drizzle-orm';
-import { dayMs, formatInstant, hourMs } from '../../domain/dates.ts';
+import { dayMs, formatWindowEnd, hourMs } from '../../domain/dates.ts';
 import { closesSoonHours, lapseAfterDays } from '../../domain/request-states.ts';
 import { businessNow } from '../adapters/clock.ts';
 import { handedInBids } from '../bids/index.ts';
@@ -37,7 +37,7 @@ async function remindOfClosing(db: Database, now: number): Promise<void> {
           kind: 'bids-close-soon',
           subject: `Bids close soon: ${row.title}`,
           content: {
-            heading: `Bids for “${row.title}” close ${formatInstant(row.closesAt, row.buyerZone ?? 'UTC')}`,
+            heading: `Bids for “${row.title}” close ${formatWindowEnd(row.closesAt, row.buyerZone ?? 'UTC')}`,
             paragraphs: ['A bid that is still a draft then lapses.'],
             facts: [['Time zone', row.buyerZone ?? 'UTC']],
             action: { label: 'Go to your bid', path: `/requests/${id}/bid` },

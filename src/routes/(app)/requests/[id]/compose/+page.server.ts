@@ -4,7 +4,6 @@ import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
 import { listMachines, viewMachine } from '$lib/server/machines/index.ts';
 import { requestForUpdate, viewDraft } from '$lib/server/requests/index.ts';
-import { resultOf } from '$lib/server/checks/index.ts';
 import { postRequest } from '$lib/server/workflows/post-request.ts';
 import type { Actions, PageServerLoad } from './$types.ts';
 
@@ -15,14 +14,13 @@ export const load: PageServerLoad = async (event) => {
   // A posted request is no longer composed; whoever may not see it learns nothing from the way there.
   if (state !== 'draft') redirect(303, `/requests/${id}`);
   return loading(async () => {
-    const { check, ...draft } = await viewDraft(database(), actor, id);
+    const draft = await viewDraft(database(), actor, id);
     const listed = await listMachines(database(), actor, { companyId: draft.companyId });
     const machines = await Promise.all(
       listed.slice(0, 100).map((item) => viewMachine(database(), actor, item.id)),
     );
     return {
       draft,
-      check: check ? { ...check, body: undefined, result: resultOf(check.body) } : null,
       machines: machines.map(({ id: machineId, version, body }) => ({ id: machineId, version, body })),
       timeZone: actor.timeZone,
     };
