@@ -4,10 +4,28 @@ import svelte from 'eslint-plugin-svelte';
 import ts from 'typescript-eslint';
 import svelteConfig from './svelte.config.js';
 
-const node = { process: 'readonly', console: 'readonly', Buffer: 'readonly', URL: 'readonly', fetch: 'readonly' };
+const node = {
+  process: 'readonly',
+  console: 'readonly',
+  Buffer: 'readonly',
+  URL: 'readonly',
+  fetch: 'readonly',
+};
 
 export default ts.config(
-  { ignores: ['build/', '.svelte-kit/', 'node_modules/', '.data/', 'drizzle/', 'reports/', 'coverage/', 'test-results/', 'static/'] },
+  {
+    ignores: [
+      'build/',
+      '.svelte-kit/',
+      'node_modules/',
+      '.data/',
+      'drizzle/',
+      'reports/',
+      'coverage/',
+      'test-results/',
+      'static/',
+    ],
+  },
   js.configs.recommended,
   ...ts.configs.recommended,
   ...svelte.configs.recommended,

@@ -14,7 +14,11 @@ async function main(): Promise<void> {
   await waitForMigrations(db, config().database.migrationsDir);
   const mailer = createMailer(config().mail);
   log().info('worker ready');
-  await runWorker(db, { owner: `worker-${randomUUID()}`, send: (mail) => mailer.send(mail), signal: stop.signal });
+  await runWorker(db, {
+    owner: `worker-${randomUUID()}`,
+    send: (mail) => mailer.send(mail),
+    signal: stop.signal,
+  });
   closeDatabase();
 }
 

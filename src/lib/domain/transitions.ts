@@ -27,7 +27,7 @@ export function defineStateMachine<const State extends string, const Event exten
   }
   if (!known.has(machine.initial)) throw new Error(`${machine.name}: unknown initial state`);
   const reached = new Set<string>([machine.initial]);
-  for (let grown = true; grown; ) {
+  for (let grown = true; grown;) {
     grown = false;
     for (const { from, to } of machine.transitions) {
       if (!reached.has(to) && from.some((state) => reached.has(state))) {

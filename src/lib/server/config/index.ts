@@ -11,7 +11,10 @@ const environment = z.object({
   DATABASE_URL: z.string().min(1).default('file:.data/coilyard.db'),
   DATABASE_AUTH_TOKEN: z.string().optional(),
   MIGRATIONS_DIR: z.string().default('drizzle'),
-  AUTH_SECRET: z.string().min(32, 'needs 32 characters or more').default('demo-only-secret-never-in-production-0000'),
+  AUTH_SECRET: z
+    .string()
+    .min(32, 'needs 32 characters or more')
+    .default('demo-only-secret-never-in-production-0000'),
   STRIPE_SECRET_KEY: z.string().min(8).default('sk_test_coilyard_demo'),
   STRIPE_API_BASE: z.url().default('http://127.0.0.1:4010'),
   STRIPE_WEBHOOK_SECRET: z.string().min(8).default('whsec_coilyard_demo_payments'),

@@ -160,14 +160,22 @@ export async function runJob(
         await extend(progress);
       },
     });
-    await finish(db, row, owner, { state: 'done', finishedAt: realNow(), progress: 1_000_000, lastError: null });
+    await finish(db, row, owner, {
+      state: 'done',
+      finishedAt: realNow(),
+      progress: 1_000_000,
+      lastError: null,
+    });
   } catch (error) {
     if (signal.aborted) {
       await finish(db, row, owner, { state: 'queued', runAt: realNow(), attempts: row.attempts - 1 });
       return;
     }
     const dead = row.attempts >= definition.maxAttempts;
-    log().warn({ job: row.id, kind: row.kind, attempt: row.attempts, dead, error: messageOf(error) }, 'job failed');
+    log().warn(
+      { job: row.id, kind: row.kind, attempt: row.attempts, dead, error: messageOf(error) },
+      'job failed',
+    );
     await finish(db, row, owner, {
       state: dead ? 'dead' : 'queued',
       runAt: realNow() + backoffMs(row.attempts, Math.random()),
@@ -182,7 +190,13 @@ export async function runJob(
 /** State and progress of one job, for pages that poll. */
 export async function jobState(reader: Reader, id: string) {
   const [row] = await reader
-    .select({ id: job.id, kind: job.kind, state: job.state, progress: job.progress, lastError: job.lastError })
+    .select({
+      id: job.id,
+      kind: job.kind,
+      state: job.state,
+      progress: job.progress,
+      lastError: job.lastError,
+    })
     .from(job)
     .where(eq(job.id, id));
   if (!row) throw new AppError('not-found');

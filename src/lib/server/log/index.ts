@@ -9,7 +9,10 @@ export function log(): Logger {
     level: config().logLevel,
     base: null,
     timestamp: pino.stdTimeFunctions.isoTime,
-    redact: { paths: ['password', 'token', 'authorization', 'cookie', '*.password', '*.token'], censor: '[…]' },
+    redact: {
+      paths: ['password', 'token', 'authorization', 'cookie', '*.password', '*.token'],
+      censor: '[…]',
+    },
   });
   return shared;
 }

@@ -6,7 +6,10 @@ export const mailContent = z.object({
   heading: z.string().min(1),
   paragraphs: z.array(z.string()),
   facts: z.array(z.tuple([z.string(), z.string()])).default([]),
-  action: z.object({ label: z.string(), path: z.string().startsWith('/') }).nullable().default(null),
+  action: z
+    .object({ label: z.string(), path: z.string().startsWith('/') })
+    .nullable()
+    .default(null),
 });
 export type MailContent = z.input<typeof mailContent>;
 

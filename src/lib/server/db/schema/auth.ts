@@ -91,8 +91,5 @@ export const twoFactor = sqliteTable(
     failedVerificationCount: integer('failed_verification_count').default(0),
     lockedUntil: date('locked_until'),
   },
-  (table) => [
-    index('two_factor_user').on(table.userId),
-    index('two_factor_secret').on(table.secret),
-  ],
+  (table) => [index('two_factor_user').on(table.userId), index('two_factor_secret').on(table.secret)],
 );
