@@ -87,122 +87,123 @@ export function headlines(result: CheckResult, unitSet: UnitSet): FigureLine[] {
   );
 }
 
-/** Every figure the check gave, grouped. */
-export function figureGroups(result: CheckResult, unitSet: UnitSet): FigureGroup[] {
-  const { bare, cold, hot, tank, skin, heating, water, mechanics, surroundings, leads } = result;
+function plain(
+  unitSet: UnitSet,
+  name: string,
+  value: number | null | undefined,
+  unit: 'm' | 'Pa' | '1',
+): FigureLine[] {
+  if (value === null || value === undefined) return [];
+  return [{ name, value: formatQuantity(value, unit, unitSet, null, { digits: 3 }), range: '', note: '' }];
+}
+
+function coilLines({ bare, cold, hot, leads }: CheckResult, unitSet: UnitSet): FigureLine[] {
   const at = (hertz: number | undefined) =>
     hertz === undefined ? '' : `at ${formatQuantity(hertz, 'Hz', unitSet, null, { digits: 3 })}`;
-  const plain = (
-    name: string,
-    value: number | null | undefined,
-    unit: 'm' | 'Pa' | '1',
-    note = '',
-  ): FigureLine[] =>
-    value === null || value === undefined
-      ? []
-      : [{ name, value: formatQuantity(value, unit, unitSet, null, { digits: 3 }), range: '', note }];
-  const groups: FigureGroup[] = [
-    {
-      title: 'Coil',
-      lines: lines(
-        [
-          ['Bare inductance', bare?.inductance, at(bare?.frequency)],
-          ['Bare resistance', bare?.resistance, at(bare?.frequency)],
-          ['Bare Q', bare?.q],
-          ['Inductance with part, cold', cold?.inductance, at(cold?.frequency)],
-          ['Inductance with part, hot', hot?.inductance, at(hot?.frequency)],
-          ['Resistance with part, cold', cold?.resistance],
-          ['Resistance with part, hot', hot?.resistance],
-          ['Q with part, hot', hot?.q],
-          ['Efficiency, cold', cold?.efficiency, '', 'fraction'],
-          ['Efficiency, hot', hot?.efficiency, '', 'fraction'],
-          ['Inductance of the leads', leads?.inductance],
-        ],
-        unitSet,
-      ),
-    },
-    {
-      title: 'Tank',
-      lines: lines(
-        [
-          ['Inductance the bank sees', tank?.inductance, tank ? `referred to the ${tank.referredTo}` : ''],
-          ['Resonance, cold', tank?.resonanceCold],
-          ['Resonance, hot', tank?.resonanceHot],
-          ['Operating frequency', tank?.operatingFrequency],
-          ['Q of the tank', tank?.q],
-          ['Deliverable power', tank?.deliverablePower],
-          ['Coil current', tank?.coilCurrent],
-          ['Coil voltage', tank?.coilVoltage],
-          ['Coil voltage to the tap', tank?.coilVoltageToTap],
-          ['Bank current', tank?.bankCurrent],
-          ['Reactive power', tank?.reactivePower],
-          ['Loss in the bank', tank?.bankLoss],
-          ['Loss in the transformer', tank?.transformerLoss],
-        ],
-        unitSet,
-      ),
-    },
-    {
-      title: 'Heating',
-      lines: [
-        ...lines(
-          [
-            ['Skin depth in the part, cold', skin?.partCold],
-            ['Skin depth in the part, hot', skin?.partHot],
-            ['Skin depth in the copper', skin?.copper],
-            ['Energy into the part', heating?.energy],
-            ['Mean power needed', heating?.meanPowerNeeded],
-            ['Time at deliverable power', heating?.timeAtDeliverablePower],
-            ['Loss from the surface', heating?.surfaceLoss],
-          ],
-          unitSet,
-        ),
-        ...plain('Diameter over skin depth, cold', skin?.diameterOverDepthCold, '1'),
-        ...plain('Diameter over skin depth, hot', skin?.diameterOverDepthHot, '1'),
+  return lines(
+    [
+      ['Bare inductance', bare?.inductance, at(bare?.frequency)],
+      ['Bare resistance', bare?.resistance, at(bare?.frequency)],
+      ['Bare Q', bare?.q],
+      ['Inductance with part, cold', cold?.inductance, at(cold?.frequency)],
+      ['Inductance with part, hot', hot?.inductance, at(hot?.frequency)],
+      ['Resistance with part, cold', cold?.resistance],
+      ['Resistance with part, hot', hot?.resistance],
+      ['Q with part, hot', hot?.q],
+      ['Efficiency, cold', cold?.efficiency, '', 'fraction'],
+      ['Efficiency, hot', hot?.efficiency, '', 'fraction'],
+      ['Inductance of the leads', leads?.inductance],
+    ],
+    unitSet,
+  );
+}
+
+function tankLines({ tank }: CheckResult, unitSet: UnitSet): FigureLine[] {
+  return lines(
+    [
+      ['Inductance the bank sees', tank?.inductance, tank ? `referred to the ${tank.referredTo}` : ''],
+      ['Resonance, cold', tank?.resonanceCold],
+      ['Resonance, hot', tank?.resonanceHot],
+      ['Operating frequency', tank?.operatingFrequency],
+      ['Q of the tank', tank?.q],
+      ['Deliverable power', tank?.deliverablePower],
+      ['Coil current', tank?.coilCurrent],
+      ['Coil voltage', tank?.coilVoltage],
+      ['Coil voltage to the tap', tank?.coilVoltageToTap],
+      ['Bank current', tank?.bankCurrent],
+      ['Reactive power', tank?.reactivePower],
+      ['Loss in the bank', tank?.bankLoss],
+      ['Loss in the transformer', tank?.transformerLoss],
+    ],
+    unitSet,
+  );
+}
+
+function heatingLines({ skin, heating }: CheckResult, unitSet: UnitSet): FigureLine[] {
+  return [
+    ...lines(
+      [
+        ['Skin depth in the part, cold', skin?.partCold],
+        ['Skin depth in the part, hot', skin?.partHot],
+        ['Skin depth in the copper', skin?.copper],
+        ['Energy into the part', heating?.energy],
+        ['Mean power needed', heating?.meanPowerNeeded],
+        ['Time at deliverable power', heating?.timeAtDeliverablePower],
+        ['Loss from the surface', heating?.surfaceLoss],
       ],
-    },
-    {
-      title: 'Water',
-      lines: [
-        ...lines(
-          [
-            ['Heat to carry away', water?.duty],
-            ['Flow', water?.flow],
-            ['Velocity', water?.velocity],
-            ['Temperature rise', water?.temperatureRise],
-            ['Outlet temperature', water?.outletTemperature],
-            ['Wall temperature', water?.wallTemperature],
-            ['Pressure drop', water?.pressureDrop],
-          ],
-          unitSet,
-        ),
-        ...plain('Water circuits advised', water?.circuitsAdvised, '1'),
-      ],
-    },
-    {
-      title: 'Mechanics and surroundings',
-      lines: [
-        ...plain('Clear distance between turns', mechanics?.clearanceBetweenTurns, 'm'),
-        ...plain('Clearance to the part, cold', mechanics?.radialClearanceCold, 'm'),
-        ...plain('Clearance to the part, hot', mechanics?.radialClearanceHot, 'm'),
-        ...plain('Wall after bending', mechanics?.wallAfterBending, 'm'),
-        ...plain('Test pressure', mechanics?.testPressure, 'Pa'),
-        ...lines(
-          [
-            ['Working pressure rating', mechanics?.workingPressureRating],
-            ['Keep-out distance', surroundings?.keepOutDistance, surroundings?.referenceName, 'distance'],
-          ],
-          unitSet,
-        ),
-        ...lines(
-          (surroundings?.points ?? []).map((point): Entry => [
-            `Flux density: ${point.name}`,
-            point.fluxDensity,
-          ]),
-          unitSet,
-        ),
-      ],
-    },
+      unitSet,
+    ),
+    ...plain(unitSet, 'Diameter over skin depth, cold', skin?.diameterOverDepthCold, '1'),
+    ...plain(unitSet, 'Diameter over skin depth, hot', skin?.diameterOverDepthHot, '1'),
   ];
-  return groups.filter((group) => group.lines.length > 0);
+}
+
+function waterLines({ water }: CheckResult, unitSet: UnitSet): FigureLine[] {
+  return [
+    ...lines(
+      [
+        ['Heat to carry away', water?.duty],
+        ['Flow', water?.flow],
+        ['Velocity', water?.velocity],
+        ['Temperature rise', water?.temperatureRise],
+        ['Outlet temperature', water?.outletTemperature],
+        ['Wall temperature', water?.wallTemperature],
+        ['Pressure drop', water?.pressureDrop],
+      ],
+      unitSet,
+    ),
+    ...plain(unitSet, 'Water circuits advised', water?.circuitsAdvised, '1'),
+  ];
+}
+
+function aroundLines({ mechanics, surroundings }: CheckResult, unitSet: UnitSet): FigureLine[] {
+  return [
+    ...plain(unitSet, 'Clear distance between turns', mechanics?.clearanceBetweenTurns, 'm'),
+    ...plain(unitSet, 'Clearance to the part, cold', mechanics?.radialClearanceCold, 'm'),
+    ...plain(unitSet, 'Clearance to the part, hot', mechanics?.radialClearanceHot, 'm'),
+    ...plain(unitSet, 'Wall after bending', mechanics?.wallAfterBending, 'm'),
+    ...plain(unitSet, 'Test pressure', mechanics?.testPressure, 'Pa'),
+    ...lines(
+      [
+        ['Working pressure rating', mechanics?.workingPressureRating],
+        ['Keep-out distance', surroundings?.keepOutDistance, surroundings?.referenceName, 'distance'],
+        ...(surroundings?.points ?? []).map((point): Entry => [
+          `Flux density: ${point.name}`,
+          point.fluxDensity,
+        ]),
+      ],
+      unitSet,
+    ),
+  ];
+}
+
+/** Every figure the check gave, grouped. */
+export function figureGroups(result: CheckResult, unitSet: UnitSet): FigureGroup[] {
+  return [
+    { title: 'Coil', lines: coilLines(result, unitSet) },
+    { title: 'Tank', lines: tankLines(result, unitSet) },
+    { title: 'Heating', lines: heatingLines(result, unitSet) },
+    { title: 'Water', lines: waterLines(result, unitSet) },
+    { title: 'Mechanics and surroundings', lines: aroundLines(result, unitSet) },
+  ].filter((group) => group.lines.length > 0);
 }
