@@ -47,8 +47,58 @@ export function factorSkyline(a: Skyline): void {
   for (let i = 0; i < n; i++) {
     const fi = first[i] as number;
     const ri = (offset[i] as number) - fi;
-    // v_j = L_ij·D_j, column by column.
-    for (let j = fi; j < i; j++) {
+    // v_j = L_ij·D_j, two columns at a time: the row's own values are then read once for both.
+    let j = fi;
+    for (; j + 1 < i; j += 2) {
+      const fj = first[j] as number;
+      const fk = first[j + 1] as number;
+      const rj = (offset[j] as number) - fj;
+      const rk = (offset[j + 1] as number) - fk;
+      const both = Math.min(j, Math.max(fi, fj, fk));
+      let sr = re[ri + j] as number;
+      let si = im[ri + j] as number;
+      let tr = re[ri + j + 1] as number;
+      let ti = im[ri + j + 1] as number;
+      for (let k = fj > fi ? fj : fi; k < both; k++) {
+        const ar = vr[k - fi] as number;
+        const ai = vi[k - fi] as number;
+        const br = re[rj + k] as number;
+        const bi = im[rj + k] as number;
+        sr -= ar * br - ai * bi;
+        si -= ar * bi + ai * br;
+      }
+      for (let k = fk > fi ? fk : fi; k < both; k++) {
+        const ar = vr[k - fi] as number;
+        const ai = vi[k - fi] as number;
+        const cr = re[rk + k] as number;
+        const ci = im[rk + k] as number;
+        tr -= ar * cr - ai * ci;
+        ti -= ar * ci + ai * cr;
+      }
+      for (let k = both; k < j; k++) {
+        const ar = vr[k - fi] as number;
+        const ai = vi[k - fi] as number;
+        const br = re[rj + k] as number;
+        const bi = im[rj + k] as number;
+        const cr = re[rk + k] as number;
+        const ci = im[rk + k] as number;
+        sr -= ar * br - ai * bi;
+        si -= ar * bi + ai * br;
+        tr -= ar * cr - ai * ci;
+        ti -= ar * ci + ai * cr;
+      }
+      vr[j - fi] = sr;
+      vi[j - fi] = si;
+      if (fk <= j) {
+        const cr = re[rk + j] as number;
+        const ci = im[rk + j] as number;
+        tr -= sr * cr - si * ci;
+        ti -= sr * ci + si * cr;
+      }
+      vr[j + 1 - fi] = tr;
+      vi[j + 1 - fi] = ti;
+    }
+    if (j < i) {
       const fj = first[j] as number;
       const rj = (offset[j] as number) - fj;
       let sr = re[ri + j] as number;
@@ -66,7 +116,7 @@ export function factorSkyline(a: Skyline): void {
     }
     let dr = re[ri + i] as number;
     let di = im[ri + i] as number;
-    for (let j = fi; j < i; j++) {
+    for (j = fi; j < i; j++) {
       const ar = vr[j - fi] as number;
       const ai = vi[j - fi] as number;
       const dj = (offset[j] as number) + j - (first[j] as number);
