@@ -12,16 +12,15 @@ import type {
 import type { UnitSet } from '$lib/induction/units/dimensions.ts';
 import { renderFinding } from '$lib/induction/units/render-finding.ts';
 import { lineCount, mostLines, newLine } from '$lib/schemas/forms/acceptance-fields.ts';
-import { machineValues } from '$lib/schemas/forms/machine-form.ts';
+import { machineValues } from '$lib/schemas/forms/machine-texts.ts';
+import { readCommercial, readRequirement } from '$lib/schemas/forms/requirement-form.ts';
 import {
-  acceptanceValues,
-  readCommercial,
-  readRequirement,
   sectionIds,
   sectionOf,
   sectionText,
   type SectionId,
-} from '$lib/schemas/forms/requirement-form.ts';
+} from '$lib/schemas/forms/requirement-sections.ts';
+import { acceptanceValues } from '$lib/schemas/forms/requirement-texts.ts';
 import type { ContentsItem } from '$lib/ui/ContentsList.svelte';
 import { fieldId, type SummaryLine } from '$lib/ui/form-errors.ts';
 import { drawingInput } from './drawing-input.ts';

@@ -3,7 +3,7 @@ import type { Coil, Workpiece } from '$lib/induction/check/types.ts';
 import type { UnitSet } from '$lib/induction/units/dimensions.ts';
 import type { FormOutcome, Values } from '$lib/schemas/forms/field-spec.ts';
 import { readGroups, subTree, type Tree } from '$lib/schemas/forms/form-tree.ts';
-import { sectionGroups } from '$lib/schemas/forms/requirement-form.ts';
+import { sectionGroups } from '$lib/schemas/forms/requirement-sections.ts';
 
 export function drawingInput(values: Values, unitSet: UnitSet): { coil: Coil; part: Workpiece } {
   const outcome: FormOutcome = { errors: {}, missing: [] };

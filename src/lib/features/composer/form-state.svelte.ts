@@ -3,7 +3,7 @@ import type { Fix, Requirement } from '$lib/induction/check/types.ts';
 import type { UnitSet } from '$lib/induction/units/dimensions.ts';
 import type { FieldSpec } from '$lib/schemas/forms/field-spec.ts';
 import { fieldText, readField, readingOf } from '$lib/schemas/forms/read-field.ts';
-import { sectionGroups, sectionIds, titleField } from '$lib/schemas/forms/requirement-form.ts';
+import { sectionGroups, sectionIds, titleField } from '$lib/schemas/forms/requirement-sections.ts';
 import { valuesInSet } from '$lib/schemas/forms/unit-set.ts';
 import { formPath } from './field-paths.ts';
 

@@ -2,12 +2,8 @@
 import type { Requirement } from '$lib/induction/check/types.ts';
 import { dimensionTable, type UnitSet } from '$lib/induction/units/dimensions.ts';
 import type { FieldSpec, Values } from '$lib/schemas/forms/field-spec.ts';
-import {
-  requirementValues,
-  sectionGroups,
-  sectionText,
-  type SectionId,
-} from '$lib/schemas/forms/requirement-form.ts';
+import { sectionGroups, sectionText, type SectionId } from '$lib/schemas/forms/requirement-sections.ts';
+import { requirementValues } from '$lib/schemas/forms/requirement-texts.ts';
 
 export interface ListedGroup {
   title: string;

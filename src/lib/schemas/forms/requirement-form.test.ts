@@ -1,7 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import { exampleRequirement } from '../api/examples.ts';
 import type { Requirement } from '../../induction/check/types.ts';
-import { readRequirement, readCommercial, requirementValues, newRequestValues } from './requirement-form.ts';
+import { readRequirement, readCommercial } from './requirement-form.ts';
+import { requirementValues, newRequestValues } from './requirement-texts.ts';
 
 /** Compares with the digits a form field keeps. */
 function close(value: unknown): unknown {

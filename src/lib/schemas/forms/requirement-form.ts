@@ -1,84 +1,19 @@
 /**
- * The request's form: text to the API's requirement and commercial terms, and back. What is half typed
- * stays text; the requirement exists as soon as everything it needs can be read.
+ * The request's form: text to the API's requirement and commercial terms. What is half typed stays
+ * text; the requirement exists as soon as everything it needs can be read.
  */
 import type { Commercial } from '../../domain/commercial.ts';
-import type { AcceptanceLine, Machine, Requirement } from '../../induction/check/types.ts';
+import type { Machine, Requirement } from '../../induction/check/types.ts';
 import type { UnitSet } from '../../induction/units/dimensions.ts';
 import { commercialSchema } from '../api/commercial.ts';
 import { requirementSchema } from '../api/requirement.ts';
-import { acceptanceGroups, acceptanceUnit, lineCount, lineKind } from './acceptance-fields.ts';
+import { acceptanceUnit, lineCount, lineKind } from './acceptance-fields.ts';
 import { commercialGroups } from './commercial-fields.ts';
-import { coilGroups } from './coil-fields.ts';
-import { text, type FieldGroupSpec, type FormOutcome, type Values } from './field-spec.ts';
-import { initialTexts, readGroups, subTree, textsOf, type Tree } from './form-tree.ts';
+import type { FormOutcome, Values } from './field-spec.ts';
+import { readGroups, subTree, type Tree } from './form-tree.ts';
 import { issuesToFields } from './issues.ts';
-import { machineValues, newMachineValues, readMachine } from './machine-form.ts';
-import { machineGroups } from './machine-fields.ts';
-import {
-  fixtureGroups,
-  metalPartGroups,
-  partGroups,
-  processGroups,
-  responsibilityGroup,
-} from './requirement-fields.ts';
-
-export const sectionIds = [
-  'part',
-  'process',
-  'machine',
-  'coil',
-  'fixture',
-  'acceptance',
-  'commercial',
-  'files',
-] as const;
-export type SectionId = (typeof sectionIds)[number];
-
-export const sectionText: Record<SectionId, string> = {
-  part: 'Part',
-  process: 'Process',
-  machine: 'Machine',
-  coil: 'Coil',
-  fixture: 'Fixture',
-  acceptance: 'Acceptance',
-  commercial: 'Commercial',
-  files: 'Files',
-};
-
-export const titleField = text('title', 'Title of the request', 120, {
-  empty: 'required',
-  hint: 'What bidders read first, e.g. “Coil for 40 mm pin, hardening cell 2”.',
-});
-
-/** The groups of fields of a section, for these values. */
-export function sectionGroups(section: SectionId, values: Values): readonly FieldGroupSpec[] {
-  switch (section) {
-    case 'part':
-      return partGroups;
-    case 'process':
-      return processGroups;
-    case 'machine':
-      return machineGroups(values);
-    case 'coil':
-      return coilGroups;
-    case 'fixture':
-      return [...fixtureGroups, ...metalPartGroups(values)];
-    case 'acceptance':
-      return [responsibilityGroup, ...acceptanceGroups(values)];
-    case 'commercial':
-      return commercialGroups;
-    case 'files':
-      return [];
-  }
-}
-
-/** The section a field belongs to. */
-export function sectionOf(path: string): SectionId {
-  const head = path.split('.')[0] ?? '';
-  if (head === 'designResponsibility') return 'acceptance';
-  return sectionIds.find((id) => id === head) ?? 'commercial';
-}
+import { readMachine } from './machine-form.ts';
+import { sectionGroups } from './requirement-sections.ts';
 
 function isHollow(values: Values): boolean {
   return values['part.form'] === 'tube' || values['part.form'] === 'ring';
@@ -214,55 +149,4 @@ export function readRequest(values: Values, unitSet: UnitSet): ReadRequest {
     requirement: technical.requirement,
     commercial: commercial.commercial,
   };
-}
-
-/** What a new request starts with. */
-export function newRequestValues(): Record<string, string> {
-  return {
-    ...newMachineValues(),
-    ...initialTexts([...partGroups, ...processGroups, ...coilGroups, ...fixtureGroups, responsibilityGroup]),
-    ...initialTexts(commercialGroups),
-  };
-}
-
-/** Acceptance lines as rows of the form. */
-export function acceptanceValues(
-  acceptance: readonly AcceptanceLine[],
-  unitSet: UnitSet,
-): Record<string, string> {
-  const values: Record<string, string> = { 'acceptance.rows': String(acceptance.length) };
-  acceptance.forEach((line, index) => {
-    values[`acceptance.${index}.id`] = line.id;
-    values[`acceptance.${index}.kind`] = line.kind;
-  });
-  return { ...textsOf(acceptanceGroups(values), { acceptance }, unitSet), ...values };
-}
-
-/** A requirement as the texts of its form. */
-export function requirementValues(requirement: Requirement, unitSet: UnitSet): Record<string, string> {
-  const { part, fixture } = requirement;
-  const flat = (material: Requirement['part']['material']) =>
-    material.kind === 'library' ? { id: material.id } : { id: 'own', own: material.own };
-  const tree: Tree = {
-    ...requirement,
-    part: { ...part, material: flat(part.material) },
-    fixture: {
-      ...fixture,
-      metalParts: fixture.metalParts.map((metal) => ({ ...metal, material: flat(metal.material) })),
-    },
-  };
-  const values: Record<string, string> = {
-    ...machineValues(requirement.machine, unitSet),
-    ...acceptanceValues(requirement.acceptance, unitSet),
-    'fixture.metalParts.rows': String(fixture.metalParts.length),
-  };
-  for (const section of ['part', 'process', 'coil', 'fixture'] as const) {
-    Object.assign(values, textsOf(sectionGroups(section, values), tree, unitSet));
-  }
-  values['designResponsibility'] = requirement.designResponsibility;
-  return values;
-}
-
-export function commercialValues(commercial: Commercial, unitSet: UnitSet): Record<string, string> {
-  return textsOf(commercialGroups, { commercial }, unitSet);
 }

@@ -1,7 +1,7 @@
 import type { UnitSet } from '../../induction/units/dimensions.ts';
 import type { FieldSpec, Values } from './field-spec.ts';
 import { textInSet } from './read-field.ts';
-import { sectionGroups, sectionIds } from './requirement-form.ts';
+import { sectionGroups, sectionIds } from './requirement-sections.ts';
 
 /** Every field of the request's form, shown or not. */
 export function allFields(values: Values): FieldSpec[] {

@@ -1,7 +1,8 @@
 import { redirect } from '@sveltejs/kit';
 import { z } from 'zod';
 import { AppError } from '$lib/domain/errors.ts';
-import { machineValues, readMachine } from '$lib/schemas/forms/machine-form.ts';
+import { readMachine } from '$lib/schemas/forms/machine-form.ts';
+import { machineValues } from '$lib/schemas/forms/machine-texts.ts';
 import { machineIntent } from '$lib/schemas/forms/machine-intent.ts';
 import { newId } from '$lib/server/adapters/ids.ts';
 import { database } from '$lib/server/db/index.ts';
