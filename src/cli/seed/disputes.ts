@@ -4,7 +4,7 @@ import { dispute } from '../../lib/server/db/schema/disputes.ts';
 import { addStatement, decideDispute, openDispute as open } from '../../lib/server/disputes/index.ts';
 import { milestonesOf } from '../../lib/server/orders/index.ts';
 import type { Buyer, Shop } from './cast.ts';
-import * as step from './steps.ts';
+import { record } from './records.ts';
 import type { SeedWorld } from './world.ts';
 
 interface Case {
@@ -47,7 +47,7 @@ export async function decidedDispute(
   { buyer, shop, orderId, admin, days }: Case & { admin: Actor; days: number },
 ): Promise<void> {
   await world.daysAgo(days);
-  await step.record(world, shop, orderId, { miss: true });
+  await record(world, shop, orderId, { miss: true });
   const build = (await milestonesOf(world.db, orderId)).find((row) => row.kind === 'build');
   if (!build) throw new Error('no build milestone');
   await world.daysAgo(days - 2);

@@ -5,202 +5,14 @@ import { postMessage } from '../../lib/server/messages/index.ts';
 import { releaseMilestone } from '../../lib/server/money/index.ts';
 import { answerQuestion, askQuestion } from '../../lib/server/workflows/request-questions.ts';
 import { withdrawRequest } from '../../lib/server/workflows/withdraw-request.ts';
-import {
-  foundBuyer,
-  foundShop,
-  limitAwards,
-  makeAdmin,
-  onboardPayouts,
-  verifyShop,
-  type Buyer,
-  type Shop,
-} from './cast.ts';
+import { foundShop } from './cast.ts';
+import { contract, toBuild, toShipped, type Contract } from './deal.ts';
 import { decidedDispute, openDispute } from './disputes.ts';
-import {
-  brazingMachine,
-  hardeningMachine,
-  pinRequirement,
-  ringRequirement,
-  shaftRequirement,
-  shrinkMachine,
-  tipRequirement,
-} from './requirements.ts';
+import { brazingMachine, hardeningMachine, shrinkMachine } from './requirements.ts';
+import { plans, setTheScene, type Scene } from './scene.ts';
+import { record } from './records.ts';
 import * as step from './steps.ts';
 import type { SeedWorld } from './world.ts';
-
-/** The same people with what is true of them now: the shop is verified. */
-async function refreshed(world: SeedWorld, shop: Shop): Promise<Shop> {
-  return {
-    id: shop.id,
-    owner: await world.actor(shop.owner.userId),
-    estimator: await world.actor(shop.estimator.userId),
-    builder: await world.actor(shop.builder.userId),
-  };
-}
-
-/** The companies, people, machines and payout accounts of the demo. */
-async function setTheScene(world: SeedWorld) {
-  await world.daysAgo(120);
-  const admin = await makeAdmin(world, 'Admin', 'admin@coilyard.example');
-  const secondAdmin = await makeAdmin(world, 'Second admin', 'second-admin@coilyard.example');
-  const millrace = await foundBuyer(world, {
-    name: 'Millrace Driveline',
-    short: 'Millrace',
-    currency: 'EUR',
-    timeZone: 'Europe/Berlin',
-    about: 'Hardens pins and shafts for drivelines.',
-    taxNumber: '',
-    address: { line1: 'Wehrgasse 4', postalCode: '58095', city: 'Hagen', country: 'DE' },
-  });
-  const kestrelmoor = await foundBuyer(world, {
-    name: 'Kestrelmoor Brazing',
-    short: 'Kestrelmoor',
-    currency: 'GBP',
-    timeZone: 'Europe/London',
-    about: 'Brazes carbide tips.',
-    taxNumber: '',
-    address: { line1: '9 Moor Lane', postalCode: 'S1 2AB', city: 'Sheffield', country: 'GB' },
-  });
-  const fennick = await foundBuyer(world, {
-    name: 'Fennick Shrink & Fit',
-    short: 'Fennick',
-    currency: 'USD',
-    timeZone: 'America/Chicago',
-    about: 'Heats bearing seats and rings for shrink fits.',
-    taxNumber: '',
-    address: { line1: '210 Harbor Street', postalCode: '53202', city: 'Milwaukee', country: 'US' },
-    unitSet: 'inch',
-  });
-  await limitAwards(world, millrace, 600_000);
-
-  const shopFacts = { timeZone: 'Europe/Berlin', currency: 'EUR' as const, taxNumber: '' };
-  const copperfold = await foundShop(world, {
-    ...shopFacts,
-    name: 'Copperfold Works',
-    short: 'Copperfold',
-    about: 'Work coils from 4 to 22 mm tube.',
-    statement: 'Helical and pancake coils with fixtures, measured and recorded before they leave the shop.',
-    address: { line1: 'Rohrweg 11', postalCode: '42103', city: 'Wuppertal', country: 'DE' },
-    shapes: ['helix', 'conical', 'stepped', 'pancake', 'single-turn', 'bore'],
-    work: ['braze-silver', 'machining', 'fixtures', 'repair'],
-    tests: ['inductance', 'pressure', 'flow', 'dimensions'],
-    tubeMin: '4 mm',
-    tubeMax: '22 mm',
-  });
-  const tallow = await foundShop(world, {
-    ...shopFacts,
-    name: 'Tallow Bend Shop',
-    short: 'Tallow',
-    about: 'Small coils, quickly.',
-    statement: 'A small shop for coils up to 12 mm tube, with pressure test and inductance record.',
-    address: { line1: '3 Foundry Yard', postalCode: 'B1 1AA', city: 'Birmingham', country: 'GB' },
-    shapes: ['helix', 'single-turn', 'pancake'],
-    work: ['braze-silver', 'braze-phosphorus'],
-    tests: ['inductance', 'pressure'],
-    tubeMin: '3 mm',
-    tubeMax: '13 mm',
-  });
-  await verifyShop(world, admin, copperfold.caseId);
-  await verifyShop(world, admin, tallow.caseId);
-  await onboardPayouts(world, copperfold, 'DE');
-  await onboardPayouts(world, tallow, 'GB');
-  await world.settle();
-  return {
-    admin,
-    secondAdmin,
-    millrace,
-    kestrelmoor,
-    fennick,
-    copperfold: await refreshed(world, copperfold),
-    tallow: await refreshed(world, tallow),
-  };
-}
-
-type Scene = Awaited<ReturnType<typeof setTheScene>> & {
-  hardening: string;
-  brazing: string;
-  shrinking: string;
-};
-
-const plans = {
-  shaft: (scene: Scene, title: string) => ({
-    title,
-    requirement: shaftRequirement(),
-    machineId: scene.hardening,
-    currency: 'EUR' as const,
-    place: 'Hagen, gate 2',
-    budget: '4500',
-  }),
-  pin: (scene: Scene, title: string) => ({
-    title,
-    requirement: pinRequirement(),
-    machineId: scene.hardening,
-    currency: 'EUR' as const,
-    place: 'Hagen, gate 2',
-    budget: '3000',
-  }),
-  tip: (scene: Scene, title: string) => ({
-    title,
-    requirement: tipRequirement(),
-    machineId: scene.brazing,
-    currency: 'GBP' as const,
-    place: 'Sheffield, goods in',
-    quantity: 2,
-  }),
-  ring: (scene: Scene, title: string) => ({
-    title,
-    requirement: ringRequirement(),
-    machineId: scene.shrinking,
-    currency: 'USD' as const,
-    place: 'Milwaukee, dock 3',
-    inspectionDays: 14,
-  }),
-};
-
-interface Contract {
-  buyer: Buyer;
-  shop: Shop;
-  plan: step.RequestPlan;
-  price: step.BidPlan;
-}
-
-/** Request, bid, award and acknowledgement, `days` ago. */
-async function contract(world: SeedWorld, days: number, { buyer, shop, plan, price }: Contract) {
-  await world.daysAgo(days);
-  const requestId = await step.post(world, buyer, plan);
-  await world.daysAgo(days - 2);
-  const made = await step.bid(world, shop, requestId, price);
-  await world.daysAgo(days - 4);
-  const orderId = await step.award(world, buyer, made);
-  return { requestId, orderId };
-}
-
-async function toBuild(world: SeedWorld, days: number, deal: Contract, orderId: string) {
-  await step.acknowledge(world, deal.shop, orderId);
-  await step.fund(world, deal.buyer, orderId, 'drawing');
-  await world.daysAgo(days);
-  const revision = await step.sendDrawing(world, deal.shop, orderId, deal.plan.requirement, deal.plan.title);
-  await world.daysAgo(days - 1);
-  await step.judge(world, deal.buyer, revision);
-  await releaseMilestone(world.db, deal.buyer.purchaser, {
-    milestoneId: await step.milestoneId(world, orderId, 'drawing'),
-  });
-  await world.settle();
-  await step.fund(world, deal.buyer, orderId, 'build');
-}
-
-async function toShipped(world: SeedWorld, days: number, deal: Contract, orderId: string) {
-  await world.daysAgo(days);
-  await step.record(world, deal.shop, orderId);
-  const build = await step.submitBuild(world, deal.shop, orderId);
-  await world.daysAgo(days - 1);
-  await step.acceptBuild(world, deal.buyer, orderId);
-  await releaseMilestone(world.db, deal.buyer.purchaser, { milestoneId: build });
-  await world.settle();
-  await step.fund(world, deal.buyer, orderId, 'delivery');
-  await world.daysAgo(days - 2);
-  return step.ship(world, deal.shop, orderId);
-}
 
 /** Orders that ran long ago: one done, one whose dispute was decided. */
 async function past(world: SeedWorld, scene: Scene) {
@@ -277,8 +89,8 @@ async function underWay(world: SeedWorld, scene: Scene) {
   };
   const q = await contract(world, 7.2, drawing);
   await step.acknowledge(world, tallow, q.orderId);
-  await toShipped(world, 3, travelling, e.orderId).then(() => undefined);
-  await step.record(world, tallow, w.orderId);
+  await toShipped(world, 3, travelling, e.orderId);
+  await record(world, tallow, w.orderId);
   await step.submitBuild(world, tallow, w.orderId);
   await step.fund(world, millrace, q.orderId, 'drawing');
   const revisionA = await step.sendDrawing(
@@ -331,7 +143,7 @@ async function openNow(world: SeedWorld, scene: Scene) {
     closesInDays: 12,
     budget: '4200',
   });
-  const made = await step.bid(world, copperfold, open, {
+  await step.bid(world, copperfold, open, {
     coil: 226_000,
     freight: 9_500,
     vatBp: 1900,
@@ -361,7 +173,6 @@ async function openNow(world: SeedWorld, scene: Scene) {
     kind: 'proposal',
     text: 'With a sixth turn the advised row would need one unit less. May we offer that?',
   });
-  void made;
   await step.post(world, fennick, {
     ...plans.ring(scene, 'Coil for 130 mm rings, line 2'),
     closesInDays: 20,
@@ -398,7 +209,7 @@ export async function tellStory(world: SeedWorld, say: (line: string) => void): 
   await requests(world, full);
   await openNow(world, full);
   say('A fabricator waiting to be verified …');
-  const ninefold = await foundShop(world, {
+  await foundShop(world, {
     name: 'Ninefold Inductors',
     short: 'Ninefold',
     currency: 'EUR',
@@ -413,7 +224,6 @@ export async function tellStory(world: SeedWorld, say: (line: string) => void): 
     tubeMin: '5 mm',
     tubeMax: '16 mm',
   });
-  void ninefold;
   await world.today();
   await world.settle();
   const bids = await world.db.select({ id: bidTable.id }).from(bidTable);

@@ -60,8 +60,8 @@ export async function migrate(db: Database, dir: string): Promise<string[]> {
         );
       }
     });
-    const todo = migrations.slice(applied.length);
-    for (const migration of todo) {
+    const missing = migrations.slice(applied.length);
+    for (const migration of missing) {
       for (const statement of migration.statements) await transaction.execute(statement);
       await transaction.execute({
         sql: 'insert into migration (tag, hash, applied_at) values (?, ?, ?)',
@@ -69,7 +69,7 @@ export async function migrate(db: Database, dir: string): Promise<string[]> {
       });
     }
     await transaction.commit();
-    return todo.map((migration) => migration.tag);
+    return missing.map((migration) => migration.tag);
   } catch (error) {
     transaction.close();
     throw error;
