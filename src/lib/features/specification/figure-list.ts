@@ -49,12 +49,19 @@ function contributors(figure: Figure): string {
 function lines(entries: readonly Entry[], unitSet: UnitSet, withContributors = true): FigureLine[] {
   return entries.flatMap(([name, figure, note = '', dimension]) => {
     if (!figure) return [];
-    const shown = formatFigure(figure, unitSet, { dimension });
+    // Nominal figures of the preview come without a band; three digits claim no more than they know.
+    const banded = figure.high - figure.low > 1e-3 * Math.abs(figure.value);
+    const shown = banded
+      ? formatFigure(figure, unitSet, { dimension })
+      : {
+          value: formatQuantity(figure.value, figure.unit, unitSet, null, { dimension, digits: 3 }),
+          range: '',
+        };
     return [
       {
         name,
         value: shown.value,
-        range: figure.high > figure.low ? shown.range : '',
+        range: shown.range,
         note: [note, withContributors ? contributors(figure) : ''].filter(Boolean).join(' '),
       },
     ];
