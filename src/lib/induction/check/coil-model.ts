@@ -41,9 +41,17 @@ export function chebyshevPoints(low: number, high: number, count: number): numbe
 
 /** Lagrange weights of `nodes` (in ln) at `x`. */
 function weights(nodes: readonly number[], x: number): number[] {
-  return nodes.map((node, i) =>
-    nodes.reduce((product, other, j) => (i === j ? product : (product * (x - other)) / (node - other)), 1),
-  );
+  const out: number[] = [];
+  for (let i = 0; i < nodes.length; i++) {
+    const node = nodes[i] as number;
+    let product = 1;
+    for (let j = 0; j < nodes.length; j++) {
+      const other = nodes[j] as number;
+      if (i !== j) product = (product * (x - other)) / (node - other);
+    }
+    out.push(product);
+  }
+  return out;
 }
 
 /**
@@ -74,9 +82,12 @@ export function coilModel(
       let l = 0;
       let rc = 0;
       let rl = 0;
-      for (const [i, row] of logs.entries()) {
-        for (const [j, logsAt] of row.entries()) {
-          const w = (wf[i] ?? 0) * (wi[j] ?? 0);
+      // Plain loops: a ladder with bands comes here some hundred thousand times.
+      for (let i = 0; i < wf.length; i++) {
+        for (let j = 0; j < wi.length; j++) {
+          const logsAt = logs[i]?.[j];
+          if (logsAt === undefined) continue;
+          const w = (wf[i] as number) * (wi[j] as number);
           l += w * logsAt[0];
           rc += w * logsAt[1];
           rl += w * logsAt[2];

@@ -168,7 +168,7 @@ export function coilSources(solver: Solver, input: SensitivityInput): CoilSource
   const logsOf = (question: Question): CoilShift | null => {
     const before = known.get(question);
     if (before !== undefined) return before;
-    const answer = solver.ask(question);
+    const answer = solver.askNearby(question);
     const value = answer ? logs(pointOf(answer)) : null;
     known.set(question, value);
     return value;

@@ -1,4 +1,5 @@
 /** The field solution as the check asks it: one place that counts, reports progress and can be stopped. */
+import { PermeabilityMemory } from '../field/permeability-memory.ts';
 import { solveImpedance } from '../field/solve-impedance.ts';
 import { InductionInputError } from '../input-error.ts';
 import type { Coil, ImpedanceAnswer, Requirement, SolverSetting, Workpiece } from './types.ts';
@@ -36,8 +37,13 @@ export interface Question {
   setting: SolverSetting;
 }
 
+/** A change of permeability settles to some per cent of itself in two steps after the first solution. */
+const ROUNDS_NEARBY = 3;
+
 export class Solver {
   readonly refusals: InductionInputError[] = [];
+  private readonly memory = PermeabilityMemory.empty();
+  private readonly nearby = this.memory.forDifferences(ROUNDS_NEARBY);
   private count = 0;
   private readonly expected: number;
 
@@ -50,16 +56,28 @@ export class Solver {
 
   /** null when the method refuses the question; the reason is kept in `refusals`. */
   ask(question: Question): ImpedanceAnswer | null {
+    return this.solve(question, this.memory);
+  }
+
+  /** As `ask`, for questions a little beside one another whose differences are wanted. */
+  askNearby(question: Question): ImpedanceAnswer | null {
+    return this.solve(question, this.nearby);
+  }
+
+  private solve(question: Question, memory: PermeabilityMemory): ImpedanceAnswer | null {
     if (this.options.shouldStop?.()) throw new CheckStoppedError();
     this.count += 1;
     this.options.onProgress?.(Math.min(0.95, this.count / this.expected));
     const { process } = this.requirement;
     try {
-      const answer = solveImpedance({
-        ...question,
-        startTemperatureC: process.startTemperatureC,
-        targetTemperatureC: process.targetTemperatureC,
-      });
+      const answer = solveImpedance(
+        {
+          ...question,
+          startTemperatureC: process.startTemperatureC,
+          targetTemperatureC: process.targetTemperatureC,
+        },
+        memory,
+      );
       return usable(answer) ? this.corrected(answer, question) : null;
     } catch (error) {
       if (!(error instanceof InductionInputError)) throw error;

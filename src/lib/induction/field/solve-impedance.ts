@@ -7,6 +7,7 @@ import { prepareGeometry, resolutionOf, type FieldGeometry } from './field-geome
 import { leadGeometry, leadResistance, type LeadGeometry } from './lead-circuit.ts';
 import { loopImpedance } from './loop-impedance.ts';
 import { isSaturating, partModel, solveParts } from './part-model.ts';
+import type { PermeabilityMemory } from './permeability-memory.ts';
 import { copperTemperature, partTemperature } from './thermal-state.ts';
 
 /** A coil and part whose geometry is assembled; good for any frequency, material, temperature, current. */
@@ -57,7 +58,11 @@ export function blockAt(prepared: PreparedCoil, frequency: number): CoilBlock {
 }
 
 /** Impedance of a prepared coil in one state; see `solveImpedance`. */
-export function impedanceAt(prepared: PreparedCoil, state: ImpedanceState): ImpedanceAnswer {
+export function impedanceAt(
+  prepared: PreparedCoil,
+  state: ImpedanceState,
+  memory: PermeabilityMemory | null = null,
+): ImpedanceAnswer {
   requireWithin(state.frequency, FREQUENCY_LIMITS[0], FREQUENCY_LIMITS[1], 'frequency', 'Frequency');
   requireWithin(state.current, 0, 1e7, 'current', 'Coil current');
   const block = blockAt(prepared, state.frequency);
@@ -82,9 +87,14 @@ export function impedanceAt(prepared: PreparedCoil, state: ImpedanceState): Impe
       part.heatedLength,
     );
     const scale = prepared.rings.turns / prepared.rings.rings.length;
-    const solved = solveParts(block, [model], () => state.current * scale);
+    const saturating = isSaturating(model);
+    const start = saturating ? (memory?.start(state.state, model) ?? null) : null;
+    const rounds = start === null ? null : (memory?.rounds ?? null);
+    const solved = solveParts(block, [model], () => state.current * scale, start && [start], rounds);
     field = solved.field;
-    if (isSaturating(model)) {
+    if (saturating) {
+      const found = solved.permeability[0];
+      if (found !== undefined && solved.converged) memory?.keep(state.state, model, found);
       modelError = [0.05, 0.05];
       assumptions.push(
         `Magnetic part: first-harmonic permeability at ${state.current.toPrecision(3)} A rms, no hysteresis loss.`,
@@ -175,19 +185,38 @@ function answerOf(
 }
 
 const recent = new Map<string, PreparedCoil>();
-const RECENT = 3;
+/** A check asks for a dozen geometries (tolerances moved one by one), first with the part cold, then hot. */
+const RECENT = 12;
+/** Unknowns squared that are kept together: a matrix entry each in two geometry matrices, and as much in blocks. */
+const RECENT_ENTRIES = 1.5e6;
 
-/** Reuses the last few geometries: ladders, cold/hot and bare/loaded pairs ask for the same many times. */
+const entriesOf = (prepared: PreparedCoil) => prepared.geometry.kept.length ** 2;
+
+/** Makes room for one more: the least recently used go first. */
+function forget(entries: number): void {
+  let sum = entries;
+  for (const one of recent.values()) sum += entriesOf(one);
+  for (const [key, one] of recent) {
+    if (recent.size < RECENT && sum <= RECENT_ENTRIES) return;
+    recent.delete(key);
+    sum -= entriesOf(one);
+  }
+}
+
+/** Reuses the last geometries: ladders, cold/hot and bare/loaded pairs ask for the same many times. */
 function prepareOnce(query: ImpedanceQuery): PreparedCoil {
   // NaN would read as null, which is a valid "not known": keep them apart.
   const key = JSON.stringify([query.coil, query.part, query.setting], (_, value: unknown) =>
     typeof value === 'number' && !Number.isFinite(value) ? String(value) : value,
   );
   const known = recent.get(key);
-  if (known !== undefined) return known;
+  if (known !== undefined) {
+    recent.delete(key);
+    recent.set(key, known);
+    return known;
+  }
   const prepared = prepareCoil(query.coil, query.part, query.setting);
-  const oldest = recent.keys().next();
-  if (recent.size >= RECENT && !oldest.done) recent.delete(oldest.value);
+  forget(entriesOf(prepared));
   recent.set(key, prepared);
   return prepared;
 }
@@ -203,13 +232,17 @@ function prepareOnce(query: ImpedanceQuery): PreparedCoil {
  * Range: 1 Hz – 100 MHz, 0.5 – 200 turns, gaps above 3 % of the tube. The last few geometries are kept, so that
  * asking for further frequencies or states of the same coil and part costs about half.
  *
+ * @param memory where a saturating part starts from, and what it leaves for the next question; null: from an estimate
  * @throws InductionInputError for input that cannot be computed, with a plain message and the field
  * Source: solver note of this project; Kress, Linear Integral Equations (1989); Johnson & Nédélec (1980).
  */
-export function solveImpedance(query: ImpedanceQuery): ImpedanceAnswer {
+export function solveImpedance(
+  query: ImpedanceQuery,
+  memory: PermeabilityMemory | null = null,
+): ImpedanceAnswer {
   if (!isAxisymmetric(query.coil.winding)) {
     requireWithin(query.frequency, FREQUENCY_LIMITS[0], FREQUENCY_LIMITS[1], 'frequency', 'Frequency');
     return loopImpedance(query);
   }
-  return impedanceAt(prepareOnce(query), query);
+  return impedanceAt(prepareOnce(query), query, memory);
 }
