@@ -5,6 +5,7 @@ import { addDays, dateIn, dayMs } from '../../src/lib/domain/dates.ts';
 import { moveClock } from '../../src/lib/server/adapters/clock.ts';
 import { newId } from '../../src/lib/server/adapters/ids.ts';
 import {
+  askBidAgain,
   confirmBid,
   decideException,
   lapseBids,
@@ -21,6 +22,7 @@ import { outboxMail } from '../../src/lib/server/db/schema/platform.ts';
 import { request } from '../../src/lib/server/db/schema/requests.ts';
 import { compareBids } from '../../src/lib/server/workflows/compare-bids.ts';
 import { awardBid, decideApproval } from '../../src/lib/server/workflows/award-bid.ts';
+import { declineOrder } from '../../src/lib/server/workflows/end-order.ts';
 import { testDatabase, type TestDatabase } from '../support/db.ts';
 import { aCompany, aMember } from '../support/people.ts';
 import { aPostedRequest, aReadyPayout, bidValues } from '../support/requests.ts';
@@ -308,6 +310,34 @@ describe('the award', () => {
     await expect(
       awardBid(test.db, purchaser, { bidId: saved.id, version: saved.version + 1 }),
     ).rejects.toMatchObject({ code: 'state-conflict' });
+  });
+});
+
+describe('after an order fell through', () => {
+  it('the buyer turns to another bid, its bidder confirms, and it is awarded', async () => {
+    const first = await handIn(estimator, shopId);
+    const second = await handIn(otherEstimator, otherId);
+    const outcome = await awardBid(test.db, purchaser, { bidId: first.id, version: first.version });
+    if (outcome.kind !== 'awarded') throw new Error('not awarded');
+    await declineOrder(test.db, estimator, { orderId: outcome.orderId, reason: 'The mandrel is broken.' });
+    const states = await test.db
+      .select({ state: request.state })
+      .from(request)
+      .where(eq(request.id, requestId));
+    expect(states[0]?.state).toBe('re-opened');
+    const [passed] = await test.db.select().from(bid).where(eq(bid.id, second.id));
+    const seen = { bidId: second.id, version: passed?.version ?? 0 };
+    await expect(askBidAgain(test.db, engineer, seen)).rejects.toMatchObject({ code: 'not-allowed' });
+    await expect(askBidAgain(test.db, otherEstimator, seen)).rejects.toMatchObject({ code: 'not-found' });
+    const asked = await askBidAgain(test.db, purchaser, seen);
+    expect(await mailsOf('bid-asked-again')).toContain(otherEstimator.email);
+    await expect(awardBid(test.db, purchaser, { bidId: second.id, version: asked.version })).rejects.toThrow(
+      /confirm/,
+    );
+    const confirmed = await confirmBid(test.db, otherEstimator, { bidId: second.id, version: asked.version });
+    const again = await awardBid(test.db, purchaser, { bidId: second.id, version: confirmed.version });
+    expect(again.kind).toBe('awarded');
+    expect(await test.db.select().from(coilOrder)).toHaveLength(2);
   });
 });
 

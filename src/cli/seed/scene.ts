@@ -23,6 +23,8 @@ async function refreshed(world: SeedWorld, shop: Shop): Promise<Shop> {
 /** The companies, people, machines and payout accounts of the demo. */
 export async function setTheScene(world: SeedWorld) {
   await world.daysAgo(120);
+  // The platform pays the processing fees out of its own balance; without one, full refunds would wait.
+  for (const currency of ['eur', 'usd', 'gbp']) await world.control('balance', { amount: 200_000, currency });
   const admin = await makeAdmin(world, 'Admin', 'admin@coilyard.example');
   const secondAdmin = await makeAdmin(world, 'Second admin', 'second-admin@coilyard.example');
   const millrace = await foundBuyer(world, {

@@ -2,7 +2,9 @@ import { eq } from 'drizzle-orm';
 import { bid as bidTable } from '../../lib/server/db/schema/bids.ts';
 import { question, request } from '../../lib/server/db/schema/requests.ts';
 import { postMessage } from '../../lib/server/messages/index.ts';
-import { releaseMilestone } from '../../lib/server/money/index.ts';
+import { heldBalance, releaseMilestone } from '../../lib/server/money/index.ts';
+import { declineOrder } from '../../lib/server/workflows/end-order.ts';
+import { answerEnd, proposeEnd } from '../../lib/server/workflows/end-proposals.ts';
 import { answerQuestion, askQuestion } from '../../lib/server/workflows/request-questions.ts';
 import { withdrawRequest } from '../../lib/server/workflows/withdraw-request.ts';
 import { foundShop } from './cast.ts';
@@ -17,6 +19,10 @@ import type { SeedWorld } from './world.ts';
 /** Orders that ran long ago: one done, one whose dispute was decided. */
 async function past(world: SeedWorld, scene: Scene) {
   const { millrace, fennick, copperfold, tallow } = scene;
+  // Nobody was awarded; ninety days after its closing the request lapses by itself.
+  await world.daysAgo(119);
+  await step.post(world, fennick, { ...plans.ring(scene, 'Coil for coupling halves'), closesInDays: 3 });
+
   const first: Contract = {
     buyer: millrace,
     shop: copperfold,
@@ -54,7 +60,7 @@ async function underWay(world: SeedWorld, scene: Scene) {
     plan: plans.pin(scene, 'Coil for 32 mm pins, second cell'),
     price: { coil: 158_000, freight: 9_500, vatBp: 1900, days: 15 },
   };
-  const d = await contract(world, 44, disputed);
+  const d = await contract(world, 42, disputed);
   await toBuild(world, 38, disputed, d.orderId);
   const there = await toShipped(world, 20, disputed, d.orderId);
 
@@ -109,6 +115,45 @@ async function underWay(world: SeedWorld, scene: Scene) {
     text: 'Revision B has the spacing of your plate; everything else is unchanged.',
     files: [],
   });
+}
+
+/** Orders that did not come about: one ended by agreement, one declined, so that its request is open again. */
+async function fellThrough(world: SeedWorld, scene: Scene) {
+  const { kestrelmoor, millrace, copperfold, tallow } = scene;
+  const ended: Contract = {
+    buyer: kestrelmoor,
+    shop: copperfold,
+    plan: plans.tip(scene, 'Tip brazing coils, old bench'),
+    price: { coil: 71_000, freight: 7_500, days: 12 },
+  };
+  const a = await contract(world, 52, ended);
+  await step.acknowledge(world, copperfold, a.orderId);
+  await step.fund(world, kestrelmoor, a.orderId, 'drawing');
+  await world.daysAgo(47);
+  const drawing = await step.milestoneId(world, a.orderId, 'drawing');
+  const held = await heldBalance(world.db, drawing);
+  const { proposalId } = await proposeEnd(world.db, kestrelmoor.purchaser, {
+    orderId: a.orderId,
+    parts: [{ milestoneId: drawing, release: 0, refund: held }],
+    workInHand: 'Nothing was begun.',
+    reason: 'The old bench is taken out of use.',
+    commandId: world.command(),
+  });
+  await answerEnd(world.db, copperfold.owner, { proposalId, answer: 'accept' });
+  await world.settle();
+
+  const declined: Contract = {
+    buyer: millrace,
+    shop: tallow,
+    plan: plans.pin(scene, 'Coil for 32 mm pins, trial'),
+    price: { coil: 131_000, freight: 12_000, days: 8 },
+  };
+  const b = await contract(world, 46.5, declined);
+  await declineOrder(world.db, tallow.estimator, {
+    orderId: b.orderId,
+    reason: 'The tube of this size will not arrive before the need-by date.',
+  });
+  await world.settle();
 }
 
 /** Requests in the states that come before an award, and what is without one. */
@@ -203,6 +248,7 @@ export async function tellStory(world: SeedWorld, say: (line: string) => void): 
   };
   say('Finished orders …');
   await past(world, full);
+  await fellThrough(world, full);
   say('Orders under way …');
   await underWay(world, full);
   say('Requests and bids …');

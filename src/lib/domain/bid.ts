@@ -169,6 +169,9 @@ export const bidMachine = defineStateMachine({
 });
 export type BidEvent = (typeof bidMachine.transitions)[number]['event'];
 
+/** A bid confirmed after an order fell through holds for at least this long again. */
+export const daysHeldAgain = 30;
+
 export const bidStateText: Record<BidState, string> = {
   draft: 'Draft',
   submitted: 'Submitted',

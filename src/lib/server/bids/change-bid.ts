@@ -1,14 +1,16 @@
 import { eq } from 'drizzle-orm';
 import type { Actor } from '../../domain/actor.ts';
-import { bidMachine, type BidEvent } from '../../domain/bid.ts';
-import { requireAccess } from '../access/index.ts';
+import { bidMachine, daysHeldAgain, type BidEvent } from '../../domain/bid.ts';
+import { addDays, dateIn } from '../../domain/dates.ts';
+import { AppError } from '../../domain/errors.ts';
+import { requireAccess, requireVerifiedEmail } from '../access/index.ts';
 import { businessNow } from '../adapters/clock.ts';
 import type { By } from '../audit/index.ts';
 import { transact, type Database, type Tx } from '../db/index.ts';
 import { bid, bidException } from '../db/schema/bids.ts';
 import { transition } from '../db/transition.ts';
 import { companyName } from './company-name.ts';
-import { mailBidConfirmed, mailBidWithdrawn } from './mails.ts';
+import { mailAskedAgain, mailBidConfirmed, mailBidWithdrawn } from './mails.ts';
 import { bidById, requestById, type BidRow } from './queries.ts';
 import { requireOpen } from './save-bid.ts';
 
@@ -63,6 +65,34 @@ export async function withdrawBid(db: Database, actor: Actor, { bidId, version }
   });
 }
 
+/** A bid that is taken up again after an order fell through holds for another while. */
+async function holdOn(tx: Tx, row: BidRow, zone: string): Promise<void> {
+  const until = addDays(dateIn(zone, await businessNow(tx)), daysHeldAgain);
+  if (row.validUntil >= until) return;
+  await tx.update(bid).set({ validUntil: until }).where(eq(bid.id, row.id));
+}
+
+/**
+ * The buyer turns to a bid that was not selected, because the order of the other one fell through. It
+ * can be awarded once its bidder has confirmed that it still holds.
+ */
+export async function askBidAgain(db: Database, actor: Actor, { bidId, version }: Seen): Promise<BidRow> {
+  return transact(db, async (tx) => {
+    const row = await bidById(tx, bidId);
+    const request = await requestById(tx, row.requestId);
+    requireAccess(actor, 'award.make', { companyId: request.companyId });
+    requireVerifiedEmail(actor);
+    if (request.state !== 're-opened' || row.state !== 'not-selected') {
+      throw new AppError('state-conflict', {
+        detail: 'A bid is asked again when the order of another one fell through.',
+      });
+    }
+    const after = await moveBid(tx, actor, row, 'ask-confirmation', version);
+    await mailAskedAgain(tx, request, after);
+    return after;
+  });
+}
+
 /** The bidder's word that the bid holds as the buyer wants it: without the refused exceptions. */
 export async function confirmBid(db: Database, actor: Actor, { bidId, version }: Seen): Promise<BidRow> {
   return transact(db, async (tx) => {
@@ -70,6 +100,7 @@ export async function confirmBid(db: Database, actor: Actor, { bidId, version }:
     requireAccess(actor, 'bid.edit', { companyId: row.companyId });
     const request = await requestById(tx, row.requestId);
     const after = await moveBid(tx, actor, row, 'confirm', version);
+    if (request.state === 're-opened') await holdOn(tx, after, request.buyerZone ?? 'UTC');
     await tx.update(bidException).set({ refusalConfirmed: true }).where(eq(bidException.bidId, bidId));
     if (request.currentSpecificationId) {
       await tx.update(bid).set({ specificationId: request.currentSpecificationId }).where(eq(bid.id, bidId));

@@ -1,6 +1,6 @@
 export { saveBid, type SaveBidInput } from './save-bid.ts';
 export { submitBid } from './submit-bid.ts';
-export { confirmBid, moveBid, reviseBid, withdrawBid } from './change-bid.ts';
+export { askBidAgain, confirmBid, moveBid, reviseBid, withdrawBid } from './change-bid.ts';
 export { decideException, type DecideExceptionInput } from './decide-exception.ts';
 export { myBids, ownBid, type OwnBid } from './own-bid.ts';
 export { requestForBidder, type RequestForBidder } from './request-for-bidder.ts';

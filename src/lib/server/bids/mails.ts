@@ -1,3 +1,4 @@
+import { daysHeldAgain } from '../../domain/bid.ts';
 import { formatMoney, type Currency } from '../../domain/money.ts';
 import { notifyCompany } from '../companies/recipients.ts';
 import type { Tx } from '../db/index.ts';
@@ -60,6 +61,26 @@ export async function mailExceptionRefused(tx: Tx, request: RequestRow, bid: Bid
     about: about(bid),
     href: path,
     dedupeKey: `bid-to-confirm/${bid.id}/${bid.version}`,
+  });
+}
+
+export async function mailAskedAgain(tx: Tx, request: RequestRow, bid: BidRow) {
+  const path = `/requests/${request.id}/bid`;
+  await notifyCompany(tx, bid.companyId, ['estimator'], {
+    kind: 'bid-asked-again',
+    subject: `Does your bid for ${requestName(request)} still hold?`,
+    content: {
+      heading: `The buyer of ${requestName(request)} asks for your bid again`,
+      paragraphs: [
+        'The order of another bidder did not come about. Your bid can be awarded once you confirm that it still holds.',
+        `Confirming keeps it open for at least ${daysHeldAgain} days. You can also withdraw it.`,
+      ],
+      facts: [['Total', total(bid)]],
+      action: { label: 'Open your bid', path },
+    },
+    about: about(bid),
+    href: path,
+    dedupeKey: `bid-asked-again/${bid.id}/${bid.version}`,
   });
 }
 

@@ -1,7 +1,7 @@
 import { redirect } from '@sveltejs/kit';
 import { AppError } from '$lib/domain/errors.ts';
 import { can } from '$lib/domain/policy.ts';
-import { decideException } from '$lib/server/bids/index.ts';
+import { askBidAgain, decideException } from '$lib/server/bids/index.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading } from '$lib/server/http/index.ts';
 import { compareBids } from '$lib/server/workflows/compare-bids.ts';
@@ -48,6 +48,12 @@ export const actions: Actions = {
     if (!Number.isSafeInteger(version)) throw new AppError('invalid-input');
     const outcome = await awardBid(database(), actorOf(event), { bidId: text(form, 'bidId'), version });
     redirect(303, outcome.kind === 'awarded' ? `/orders/${outcome.orderId}` : event.url.pathname);
+  }),
+  again: formAction('again', async (form, event: RequestEvent) => {
+    const version = Number(text(form, 'version'));
+    if (!Number.isSafeInteger(version)) throw new AppError('invalid-input');
+    await askBidAgain(database(), actorOf(event), { bidId: text(form, 'bidId'), version });
+    redirect(303, event.url.pathname);
   }),
   approve: formAction('approve', async (form, event: RequestEvent) => {
     const decision = text(form, 'decision');
