@@ -302,6 +302,10 @@ export const rules: Record<string, RouteRules> = {
       money,
       form((ids) => ({ bidId: ids.bid, version: '1' })),
     ),
+    'action:again': only(
+      money,
+      form((ids) => ({ bidId: ids.bid, version: '1' })),
+    ),
     'action:exception': only(
       planners,
       form((ids) => ({ exceptionId: ids.exception, decision: 'accept', reason: '', version: '1' })),

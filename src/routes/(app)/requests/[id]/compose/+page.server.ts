@@ -1,20 +1,22 @@
 import { redirect } from '@sveltejs/kit';
 import { z } from 'zod';
+import { AppError } from '$lib/domain/errors.ts';
 import { database } from '$lib/server/db/index.ts';
 import { actorOf, formAction, loading, parseInput } from '$lib/server/http/index.ts';
 import { listMachines, viewMachine } from '$lib/server/machines/index.ts';
-import { requestForUpdate, viewDraft } from '$lib/server/requests/index.ts';
+import { viewDraft } from '$lib/server/requests/index.ts';
 import { postRequest } from '$lib/server/workflows/post-request.ts';
 import type { Actions, PageServerLoad } from './$types.ts';
 
 export const load: PageServerLoad = async (event) => {
   const actor = await loading(() => Promise.resolve(actorOf(event)));
   const { id } = event.params;
-  const state = await loading(async () => (await requestForUpdate(database(), id)).state);
-  // A posted request is no longer composed; whoever may not see it learns nothing from the way there.
-  if (state !== 'draft') redirect(303, `/requests/${id}`);
   return loading(async () => {
-    const draft = await viewDraft(database(), actor, id);
+    const draft = await viewDraft(database(), actor, id).catch((problem: unknown) => {
+      // A posted request is no longer composed; to those who may not see it, it does not exist.
+      if (problem instanceof AppError && problem.code === 'state-conflict') redirect(303, `/requests/${id}`);
+      throw problem;
+    });
     const listed = await listMachines(database(), actor, { companyId: draft.companyId });
     const machines = await Promise.all(
       listed.slice(0, 100).map((item) => viewMachine(database(), actor, item.id)),
