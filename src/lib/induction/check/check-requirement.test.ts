@@ -245,6 +245,17 @@ describe('what cannot be computed', () => {
     expect(codes(check)).toContain('turns-open');
   });
 
+  it('units of no capacitance give findings and no not-a-number', () => {
+    const check = change(
+      (r) =>
+        r.machine.bank.kind === 'groups' &&
+        r.machine.bank.groups[0] &&
+        (r.machine.bank.groups[0].unitCapacitance = 0),
+    );
+    expect(numbers({ ...check, findings: [] }).every(Number.isFinite)).toBe(true);
+    expect(check.findings.map((finding) => finding.code)).toContain('unit-doubt');
+  });
+
   it('never throws and never gives a silent number, whatever the sizes', () => {
     const sizes = fc.constantFrom(Number.NaN, -1, 0, 1e-9, 1e-4, 0.01, 0.05, 3, 1e6, Infinity);
     const paths: ((r: Requirement, v: number) => void)[] = [

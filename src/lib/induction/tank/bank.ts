@@ -176,7 +176,9 @@ function thin(rows: Arrangement[], most: number): Arrangement[] {
 export function unitStress(arrangement: Arrangement, bankVoltage: number, bankCurrent: number): UnitStress[] {
   return arrangement.parts.map((part) => {
     const voltage = bankVoltage / part.unitsInSeries;
-    const current = (bankCurrent * part.capacitance) / arrangement.capacitance / part.strings;
+    // Without capacitance no unit carries current; 0/0 would put a not-a-number into the ladder.
+    const share = arrangement.capacitance > 0 ? part.capacitance / arrangement.capacitance : 0;
+    const current = (bankCurrent * share) / part.strings;
     return { part, voltage, current, reactivePower: voltage * current };
   });
 }
